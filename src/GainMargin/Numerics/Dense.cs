@@ -1,0 +1,164 @@
+using System.Numerics;
+using MathNet.Numerics.LinearAlgebra;
+using MathNet.Numerics.LinearAlgebra.Double;
+
+namespace GainMargin.Numerics;
+
+/// <summary>The other factorisations the library needs, each behind one call.</summary>
+internal static class Dense
+{
+    public static Matrix<double> Copy(Matrix<double> matrix) => DenseMatrix.OfMatrix(matrix);
+
+    public static Matrix<double> Zero(int rows, int columns) => DenseMatrix.Create(rows, columns, 0);
+
+    public static Matrix<double> Identity(int n) => DenseMatrix.CreateIdentity(n);
+
+    public static Matrix<double> Diagonal(IReadOnlyList<double> diagonal)
+        => DenseMatrix.Create(diagonal.Count, diagonal.Count, (i, j) => i == j ? diagonal[i] : 0);
+
+    /// <summary>Symmetric part, <c>(A + Aᵀ)/2</c>.</summary>
+    public static Matrix<double> SymmetricPart(Matrix<double> a) => DenseMatrix.Create(a.RowCount, a.RowCount, (i, j) => 0.5 * (a[i, j] + a[j, i]));
+
+    /// <summary>Skew part, <c>(A − Aᵀ)/2</c>; exactly zero for a matrix that is symmetric bit for bit.</summary>
+    public static Matrix<double> SkewPart(Matrix<double> a) => DenseMatrix.Create(a.RowCount, a.RowCount, (i, j) => 0.5 * (a[i, j] - a[j, i]));
+
+    /// <summary>Ascending eigenvalues and orthonormal eigenvectors of a symmetric matrix.</summary>
+    public static (double[] Values, Matrix<double> Vectors) SymmetricEigen(Matrix<double> a)
+    {
+        if (a.FrobeniusNorm() == 0)
+        {
+            return (new double[a.RowCount], Identity(a.RowCount));
+        }
+
+        var evd = SymmetricPart(a).Evd(Symmetricity.Symmetric);
+        double[] values = [.. evd.EigenValues.Select(v => v.Real)];
+        int[] order = [.. Enumerable.Range(0, values.Length).OrderBy(i => values[i])];
+        return ([.. order.Select(i => values[i])], DenseMatrix.OfColumnVectors(order.Select(i => evd.EigenVectors.Column(i))));
+    }
+
+    /// <summary>
+    /// Orthonormal bases of the right null space of <paramref name="a"/> and of its complement; singular values at or
+    /// below <paramref name="tolerance"/> count as zero.
+    /// </summary>
+    public static (Matrix<double> Null, Matrix<double> Complement) NullSpace(Matrix<double> a, double tolerance)
+    {
+        int n = a.ColumnCount;
+        if (a.FrobeniusNorm() <= tolerance)
+        {
+            return (Identity(n), Zero(n, 0));
+        }
+
+        var svd = a.Svd();
+        int rank = svd.S.Count(s => s > tolerance);
+        var v = svd.VT.Transpose();
+        return (Columns(v, rank, n), Columns(v, 0, rank));
+    }
+
+    public static Matrix<double> Columns(Matrix<double> a, int from, int to)
+    {
+        var part = Zero(a.RowCount, to - from);
+        for (int j = from; j < to; j++)
+        {
+            part.SetColumn(j - from, a.Column(j));
+        }
+
+        return part;
+    }
+
+    /// <summary>Solves <c>A X = B</c>, or returns <see langword="null"/> where <c>A</c> is singular to working precision.</summary>
+    public static Matrix<double>? TrySolve(Matrix<double> a, Matrix<double> b)
+    {
+        if (a.RowCount == 0)
+        {
+            return Copy(b);
+        }
+
+        var x = a.LU().Solve(b);
+        return x.ForAll(double.IsFinite) ? x : null;
+    }
+
+    /// <summary>Solves a square complex system, or returns <see langword="null"/> where it is singular to working precision.</summary>
+    public static Complex[]? TrySolve(Matrix<Complex> a, Complex[] b)
+    {
+        var x = a.LU().Solve(MathNet.Numerics.LinearAlgebra.Vector<Complex>.Build.Dense(b));
+        return x.ForAll(v => double.IsFinite(v.Real) && double.IsFinite(v.Imaginary)) ? x.ToArray() : null;
+    }
+
+    /// <summary>Lower Cholesky factor, or <see langword="null"/> if the matrix is not positive definite.</summary>
+    public static Matrix<double>? TryCholesky(Matrix<double> a)
+    {
+        try
+        {
+            return a.Cholesky().Factor;
+        }
+        catch (ArgumentException)
+        {
+            return null;
+        }
+    }
+
+    /// <summary><c>L⁻¹ B</c> for a lower triangular <c>L</c>.</summary>
+    public static Matrix<double> LowerSolve(Matrix<double> lower, Matrix<double> b)
+    {
+        var x = Copy(b);
+        int n = lower.RowCount;
+        for (int j = 0; j < b.ColumnCount; j++)
+        {
+            for (int i = 0; i < n; i++)
+            {
+                double sum = x[i, j];
+                for (int k = 0; k < i; k++)
+                {
+                    sum -= lower[i, k] * x[k, j];
+                }
+
+                x[i, j] = sum / lower[i, i];
+            }
+        }
+
+        return x;
+    }
+
+    /// <summary><c>L⁻ᵀ v</c> for a lower triangular <c>L</c>.</summary>
+    public static Complex[] LowerTransposeSolve(Matrix<double> lower, ReadOnlySpan<Complex> v)
+    {
+        int n = lower.RowCount;
+        var x = v.ToArray();
+        for (int i = n - 1; i >= 0; i--)
+        {
+            var sum = x[i];
+            for (int k = i + 1; k < n; k++)
+            {
+                sum -= lower[k, i] * x[k];
+            }
+
+            x[i] = sum / lower[i, i];
+        }
+
+        return x;
+    }
+
+    public static double Norm2(ReadOnlySpan<Complex> v)
+    {
+        double largest = 0;
+        foreach (var c in v)
+        {
+            largest = Math.Max(largest, Math.Max(Math.Abs(c.Real), Math.Abs(c.Imaginary)));
+        }
+
+        if (largest == 0 || !double.IsFinite(largest))
+        {
+            return largest;
+        }
+
+        double sum = 0;
+        foreach (var c in v)
+        {
+            double re = c.Real / largest;
+            double im = c.Imaginary / largest;
+            sum += (re * re) + (im * im);
+        }
+
+        return largest * Math.Sqrt(sum);
+    }
+}

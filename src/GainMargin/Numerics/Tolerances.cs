@@ -1,0 +1,30 @@
+namespace GainMargin.Numerics;
+
+/// <summary>Every tolerance of the library, scaled by size and norm: <c>c·ε·n·‖A‖</c>.</summary>
+internal static class Tolerances
+{
+    /// <summary>Spacing of doubles at one, 2⁻⁵².</summary>
+    public const double Epsilon = 2.220446049250313e-16;
+
+    /// <summary>Imaginary part, relative to the modulus, below which a computed parameter value counts as real.</summary>
+    /// <remarks>A real double value splits into a pair at a distance of √ε; this leaves a factor of seven.</remarks>
+    public const double RealParameter = 1e-7;
+
+    /// <summary>Largest eigenvalue condition number that first-order error bounds are trusted with.</summary>
+    public const double LargestCondition = 1e-1 / Epsilon;
+
+    /// <summary>Backward error of a dense factorisation or eigenvalue iteration of order <paramref name="n"/>.</summary>
+    public static double Backward(int n, double norm) => Epsilon * Math.Max(n, 4) * norm;
+
+    /// <summary>Singular values below this belong to the null space of a matrix of order <paramref name="n"/>.</summary>
+    public static double NullSpace(int n, double norm) => 10 * Epsilon * Math.Max(n, 4) * norm;
+
+    /// <summary>
+    /// Rounding of one residual entry per unit of <c>|s|²|M|+|s||D|+|K|</c>: the entries of the matrices carry a few roundings each from
+    /// scaling and from the loops, the products one more.
+    /// </summary>
+    public const double Entry = 4 * Epsilon;
+
+    /// <summary>A symmetric matrix whose skew part is below this fraction of its norm counts as symmetric.</summary>
+    public static double Symmetry(int n) => 8 * Epsilon * Math.Max(n, 4);
+}

@@ -1,0 +1,83 @@
+using System.Numerics;
+using GainMargin.Numerics;
+using MathNet.Numerics.LinearAlgebra;
+
+namespace GainMargin;
+
+/// <summary>An onset whose root counts on both sides are not known yet.</summary>
+internal sealed record OnsetDraft(
+    double Gain, double Uncertainty, OnsetKind Kind, Frequency Frequency, double? Slope, double BackwardError,
+    NamedVector Right, NamedVector Left, EnergyBalance? Energy)
+{
+    public bool IsTogetherWith(OnsetDraft other)
+        => Math.Abs(Gain - other.Gain) <= (2 * (Uncertainty + other.Uncertainty)) + (4 * Tolerances.Epsilon * Math.Abs(Gain));
+}
+
+/// <summary>Turns located onsets into drafts with modes, slope, backward error and energy balance in the units of the model.</summary>
+internal sealed class OnsetEvidence(SweepModel sweep)
+{
+    private readonly DofNames _dofs = sweep.Path.Nominal.Structure.Dofs;
+
+    public OnsetDraft OfFlutter(FlutterCrossing crossing)
+    {
+        double omega = crossing.Omega * sweep.Model.Rate;
+        var physical = sweep.Model.EvenToPhysical(crossing.Right);
+        var mode = NamedVector.Scaled(_dofs, physical);
+        return new OnsetDraft(
+            crossing.Gain, crossing.Uncertainty, OnsetKind.Flutter, Frequency.Of(omega), crossing.Touches ? 0 : crossing.Slope.Real * sweep.Model.Rate,
+            ModeMeasures.BackwardError(sweep.Model.Even.At(sweep.GainsAt(crossing.Gain)), new Complex(0, crossing.Omega), crossing.Right),
+            mode, Mode(crossing.Left), EnergyBalance.Of(sweep.Path.At(crossing.Gain), omega, [.. mode.Values]));
+    }
+
+    /// <summary>
+    /// The zero root moves with <c>s′ = −wᵀT_g v / wᵀT_s v</c>; of a motion without stiffness the damping (or mass) takes the
+    /// place of the stiffness and the mass that of the damping, as in the static matrix <c>T</c> itself.
+    /// </summary>
+    public OnsetDraft OfDivergence(SingularGain gain)
+    {
+        double[] gains = sweep.GainsAt(gain.Gain);
+        var closed = sweep.Model.Even.At(gains);
+        var change = sweep.Model.Even.SlopeAt(gains, sweep.SlopesAt(gain.Gain));
+        var (elastic, drifting, free) = Parts(gain.Right);
+        var byRoot = BorderedSystem.Inner(gain.Left, Sum(closed.SlopeTimes(Complex.Zero, elastic), MassOnly(closed).Times(Complex.One, drifting)));
+        var byGain = BorderedSystem.Inner(gain.Left, Sum(
+            Sum(change.Times(Complex.Zero, gain.Right), change.SlopeTimes(Complex.Zero, drifting)), MassOnly(change).Times(Complex.One, free)));
+        double rounding = BorderedSystem.Rounding(sweep.Model.Even.ModuliAt(gains), 1, gain.Left, gain.Right);
+        double? slope = Complex.Abs(byRoot) <= rounding ? null : -(byGain / byRoot).Real * sweep.Model.Rate;
+        var shape = IsThere(free) ? free : IsThere(drifting) ? drifting : gain.Right;
+        return new OnsetDraft(
+            gain.Gain, gain.Uncertainty, OnsetKind.Divergence, default, slope,
+            ModeMeasures.BackwardError(closed, Complex.Zero, shape), Mode(shape), Mode(gain.Left), null);
+
+        bool IsThere(Complex[] part) => Dense.Norm2(part) > 1e-8 * Dense.Norm2(gain.Right);
+    }
+
+    public OnsetDraft OfInfinity(SingularGain gain)
+    {
+        var closed = sweep.Model.Even.At(sweep.GainsAt(gain.Gain));
+        return new OnsetDraft(
+            gain.Gain, gain.Uncertainty, OnsetKind.ThroughInfinity, Frequency.Unlimited, null,
+            ModeMeasures.BackwardError(MassOnly(closed), Complex.One, gain.Right), Mode(gain.Right), Mode(gain.Left), null);
+    }
+
+    private static QuadraticPencil MassOnly(QuadraticPencil pencil) => new(pencil.Mass, pencil.Mass * 0, pencil.Mass * 0);
+
+    private static Complex[] Sum(Complex[] a, Complex[] b) => [.. a.Zip(b, (x, y) => x + y)];
+
+    /// <summary>Splits a vector into its elastic part and its parts along drifting and free rigid motion.</summary>
+    private (Complex[] Elastic, Complex[] Drifting, Complex[] Free) Parts(Complex[] v)
+    {
+        var drifting = Along(sweep.Permanent.Drifting);
+        var free = Along(sweep.Permanent.Free);
+        return ([.. v.Select((x, i) => x - drifting[i] - free[i])], drifting, free);
+
+        Complex[] Along(Matrix<double> hat)
+        {
+            var basis = sweep.Model.HatToEven(hat);
+            var onto = basis * basis.TransposeThisAndMultiply(sweep.Model.Even.Open.Mass);
+            return [.. Enumerable.Range(0, v.Length).Select(i => Enumerable.Range(0, v.Length).Aggregate(Complex.Zero, (sum, j) => sum + (onto[i, j] * v[j])))];
+        }
+    }
+
+    private NamedVector Mode(Complex[] even) => NamedVector.Scaled(_dofs, sweep.Model.EvenToPhysical(even));
+}

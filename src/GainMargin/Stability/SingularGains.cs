@@ -1,0 +1,280 @@
+using System.Numerics;
+using GainMargin.Numerics;
+using MathNet.Numerics.LinearAlgebra;
+
+namespace GainMargin;
+
+/// <summary>A value at which a closed-loop matrix is singular, with its null vectors in evenly scaled coordinates.</summary>
+internal sealed record SingularGain(double Gain, double Uncertainty, Complex[] Right, Complex[] Left);
+
+/// <summary>
+/// All values of a path in its range at which <c>T(g) = T₀ + B(I + G(g)R)⁻¹G(g)Σᵀ</c> is singular: divergences for the
+/// static matrix, losses through infinity for the mass. With <c>T₀</c> taken at a shift inside the range, and
+/// <c>H = [Σᵀ R]·[T −B; GΣᵀ I+GR]⁻¹·[0; I]</c> (<c>r×r</c>), the condition is <c>det(I + ΔG(t)H) = 0</c>: a polynomial
+/// eigenproblem of the size of the number of moving loops, so complete and independent of the size of the model.
+/// </summary>
+/// <remarks>F. Tisseur, K. Meerbergen, SIAM Rev. 43 (2001) 235–286, for the linearisation.</remarks>
+internal sealed class SingularGains
+{
+    private static readonly double[] ShiftFractions = [0.5, 0.381966, 0.618034, 0.145898, 0.854102, 0.034, 0.966, 0.0, 1.0];
+
+    private readonly LoopedPencil _static;
+    private readonly SweepModel _sweep;
+
+    private SingularGains(LoopedPencil staticPencil, SweepModel sweep)
+    {
+        _static = staticPencil;
+        _sweep = sweep;
+    }
+
+    /// <summary>Whether the matrix is regular for almost every value; if not, nothing can be said of its singular values.</summary>
+    public bool IsRegular { get; private set; } = true;
+
+    public IReadOnlyList<SingularGain> Found { get; private set; } = [];
+
+    /// <summary>
+    /// Values with a zero root beyond those that are always there. Motions without stiffness are given their damping, or
+    /// their mass where they meet no damping either: <c>T = K + D·R₁R₁ᵀM + M·R₂R₂ᵀM</c>.
+    /// </summary>
+    public static SingularGains Divergences(SweepModel sweep)
+    {
+        var even = sweep.Model.Even;
+        var mass = even.Open.Mass;
+        var drifting = sweep.Model.HatToEven(sweep.Permanent.Drifting);
+        var free = sweep.Model.HatToEven(sweep.Permanent.Free);
+        var ontoDrifting = drifting * drifting.TransposeThisAndMultiply(mass);
+        var ontoFree = free * free.TransposeThisAndMultiply(mass);
+        return Run(
+            even.Open.Stiffness + (even.Open.Damping * ontoDrifting) + (mass * ontoFree), sweep,
+            (ratio, s) => (ratio.Position * s) + (ratio.Rate * ontoDrifting.TransposeThisAndMultiply(s)) + (ratio.Acceleration * ontoFree.TransposeThisAndMultiply(s)));
+    }
+
+    /// <summary>Values at which a root passes through infinity.</summary>
+    public static SingularGains ThroughInfinity(SweepModel sweep)
+        => Run(sweep.Model.Even.Open.Mass, sweep, (ratio, s) => ratio.Acceleration * s);
+
+    private static SingularGains Run(Matrix<double> open, SweepModel sweep, Func<FeedbackRatios, MathNet.Numerics.LinearAlgebra.Vector<double>, MathNet.Numerics.LinearAlgebra.Vector<double>> sensed)
+    {
+        var even = sweep.Model.Even;
+        int n = even.Order;
+        int r = even.LoopCount;
+        var sense = Dense.Zero(n, r);
+        var residual = even.Residual is null ? null : Dense.Copy(even.Residual);
+        for (int k = 0; k < r; k++)
+        {
+            sense.SetColumn(k, sensed(even.Ratios[k], even.Sense.Column(k)));
+            residual?.SetRow(k, even.Residual!.Row(k) * even.Ratios[k].Position);
+        }
+
+        var zero = Dense.Zero(n, n);
+        var unit = new FeedbackRatios[r];
+        Array.Fill(unit, new FeedbackRatios { Position = 1 });
+        var gains = new SingularGains(new LoopedPencil(new QuadraticPencil(zero, zero, open), even.Drive, sense, unit, residual), sweep);
+        gains.Search();
+        return gains;
+    }
+
+    private void Search()
+    {
+        int[] moving = [.. Enumerable.Range(0, _static.LoopCount).Where(k =>
+            _sweep.Polynomials[k].Length > 1 && (_static.Sense.Column(k).L2Norm() > 0 || _static.Residual?.Row(k).L2Norm() > 0))];
+        if (moving.Length == 0)
+        {
+            return;
+        }
+
+        var range = _sweep.Path.Range;
+        double shift = 0;
+        Matrix<double>? flexibility = null;
+        double smallest = double.PositiveInfinity;
+        foreach (double fraction in ShiftFractions)
+        {
+            double at = range.From + (fraction * range.Width);
+            var (candidate, size) = FlexibilityAt(at, moving);
+            if (candidate is not null && size < smallest)
+            {
+                (shift, flexibility, smallest) = (at, candidate, size);
+            }
+        }
+
+        IsRegular = flexibility is not null && smallest < 1e-3 / Tolerances.Epsilon;
+        if (flexibility is null || !IsRegular)
+        {
+            return;
+        }
+
+        var system = RealEigen.Solve(Companion(flexibility, moving, shift));
+        var found = new List<SingularGain>();
+        for (int i = 0; i < system.Values.Length; i++)
+        {
+            var tau = system.Values[i];
+            if (tau.Real == 0 || Math.Abs(tau.Imaginary) > Tolerances.RealParameter * Math.Abs(tau.Real))
+            {
+                continue;
+            }
+
+            double t = 1 / tau.Real;
+            double own = Math.Abs(t) * (system.Uncertainty[i] + Math.Abs(tau.Imaginary)) / Math.Abs(tau.Real);
+            if (shift + t + own >= range.From && shift + t - own <= range.To)
+            {
+                found.Add(Polish(shift + t, own));
+            }
+        }
+
+        Found = Merged(found);
+    }
+
+    /// <summary><c>H</c> at a shift, and the norm of the inverse against the matrix, which says how singular it is.</summary>
+    private (Matrix<double>? Flexibility, double Size) FlexibilityAt(double value, int[] moving)
+    {
+        int n = _static.Order;
+        int r = _static.LoopCount;
+        double[] gains = _sweep.GainsAt(value);
+        var extended = Dense.Zero(n + r, n + r);
+        var output = Dense.Zero(moving.Length, n + r);
+        extended.SetSubMatrix(0, 0, _static.Open.Stiffness);
+        extended.SetSubMatrix(0, n, -_static.Drive);
+        for (int k = 0; k < r; k++)
+        {
+            extended[n + k, n + k] = 1;
+            for (int j = 0; j < n; j++)
+            {
+                extended[n + k, j] = gains[k] * _static.Sense[j, k];
+            }
+
+            for (int j = 0; j < r && _static.Residual is not null; j++)
+            {
+                extended[n + k, n + j] += gains[k] * _static.Residual[k, j];
+            }
+        }
+
+        var input = Dense.Zero(n + r, moving.Length);
+        for (int m = 0; m < moving.Length; m++)
+        {
+            input[n + moving[m], m] = 1;
+            for (int j = 0; j < n; j++)
+            {
+                output[m, j] = _static.Sense[j, moving[m]];
+            }
+
+            for (int j = 0; j < r && _static.Residual is not null; j++)
+            {
+                output[m, n + j] = _static.Residual[moving[m], j];
+            }
+        }
+
+        if (Dense.TrySolve(extended, input) is not { } solution)
+        {
+            return (null, double.PositiveInfinity);
+        }
+
+        // Rows of the loops are scaled to the open matrix, so that the measure does not depend on the unit of the gain.
+        double size = solution.SubMatrix(0, n, 0, moving.Length).FrobeniusNorm() * _static.Open.Stiffness.FrobeniusNorm() / (_static.Drive.FrobeniusNorm() + double.Epsilon);
+        return (output * solution, size);
+    }
+
+    /// <summary>Companion matrix of <c>τᵈI + Σ τᵈ⁻ᵏE_kH</c>, where <c>ΔG(t) = Σ tᵏE_k</c> and <c>τ = 1/t</c>.</summary>
+    private Matrix<double> Companion(Matrix<double> flexibility, int[] moving, double shift)
+    {
+        int m = moving.Length;
+        double[][] shifted = [.. moving.Select(k => Shifted(_sweep.Polynomials[k], shift))];
+        int degree = shifted.Max(p => p.Length) - 1;
+        var companion = Dense.Zero(m * degree, m * degree);
+        for (int k = 1; k <= degree; k++)
+        {
+            for (int i = 0; i < m; i++)
+            {
+                double e = k < shifted[i].Length ? shifted[i][k] : 0;
+                for (int j = 0; j < m; j++)
+                {
+                    companion[i, ((k - 1) * m) + j] = -e * flexibility[i, j];
+                }
+            }
+        }
+
+        for (int i = m; i < m * degree; i++)
+        {
+            companion[i, i - m] = 1;
+        }
+
+        return companion;
+    }
+
+    private SingularGain Polish(double start, double own)
+    {
+        int n = _static.Order;
+        double value = start;
+        Complex[] left = Vector(_static.At(_sweep.GainsAt(value)).Stiffness, true);
+        Complex[] right = Vector(_static.At(_sweep.GainsAt(value)).Stiffness, false);
+        double previous = double.PositiveInfinity;
+        for (int step = 0; step < 12; step++)
+        {
+            double[] gains = _sweep.GainsAt(value);
+            var closed = _static.At(gains);
+            var system = BorderedSystem.Solve(closed.At(Complex.Zero), left, right);
+            if (system is null)
+            {
+                break;
+            }
+
+            var slope = -BorderedSystem.Inner(system.Left, _static.SlopeAt(gains, _sweep.SlopesAt(value)).Times(Complex.Zero, system.Right));
+            double change = -(system.Defect / slope).Real;
+            double rounding = BorderedSystem.Rounding(_static.ModuliAt(gains), 0, system.Left, system.Right) / Complex.Abs(slope);
+            if (!double.IsFinite(change) || !double.IsFinite(rounding) || Math.Abs(value + change - start) > Math.Max(100 * own, 1e-3 * Math.Abs(start)))
+            {
+                break;
+            }
+
+            (left, right) = (system.Left, system.Right);
+            value += change;
+            if (Math.Abs(change) <= rounding || Math.Abs(change) >= 0.5 * previous)
+            {
+                return new SingularGain(value, rounding + Math.Abs(change) + (Tolerances.Epsilon * Math.Abs(value)), right, left);
+            }
+
+            previous = Math.Abs(change);
+        }
+
+        // Several null vectors at once: the small eigenproblem stands as it is.
+        return new SingularGain(start, own, right, left);
+
+        Complex[] Vector(Matrix<double> a, bool ofTranspose)
+        {
+            var svd = a.Svd();
+            var v = ofTranspose ? svd.U.Column(n - 1) : svd.VT.Row(n - 1);
+            return [.. v.Select(x => new Complex(x, 0))];
+        }
+    }
+
+    private static List<SingularGain> Merged(List<SingularGain> found)
+    {
+        var merged = new List<SingularGain>();
+        foreach (var gain in found.OrderBy(g => g.Gain))
+        {
+            if (merged.Count > 0 && gain.Gain - merged[^1].Gain <= 2 * (gain.Uncertainty + merged[^1].Uncertainty))
+            {
+                merged[^1] = gain.Uncertainty < merged[^1].Uncertainty ? gain : merged[^1];
+            }
+            else
+            {
+                merged.Add(gain);
+            }
+        }
+
+        return merged;
+    }
+
+    private static double[] Shifted(double[] polynomial, double shift)
+    {
+        double[] c = [.. polynomial];
+        for (int i = 0; i < c.Length - 1; i++)
+        {
+            for (int j = c.Length - 2; j >= i; j--)
+            {
+                c[j] += shift * c[j + 1];
+            }
+        }
+
+        return c;
+    }
+}

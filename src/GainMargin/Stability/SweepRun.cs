@@ -1,0 +1,164 @@
+using System.Collections.Immutable;
+using System.Numerics;
+
+namespace GainMargin;
+
+/// <summary>One sweep from path to boundary: barriers first, then the pieces between them, then the verdicts.</summary>
+internal sealed class SweepRun
+{
+    private const double Inset = 1e-8;
+
+    private readonly GainPath _path;
+    private readonly SweepOptions _options;
+    private readonly IProgress<FinderProgress>? _progress;
+    private readonly SweepModel _sweep;
+    private readonly FlutterSearch _search;
+
+    public SweepRun(GainPath path, SweepOptions options, IProgress<FinderProgress>? progress, CancellationToken cancellation)
+    {
+        _path = path;
+        _options = options;
+        _progress = progress;
+        _sweep = new SweepModel(path, cancellation);
+        _search = new FlutterSearch(_sweep, options, Settled);
+    }
+
+    public StabilityBoundary Run()
+    {
+        Report("barriers", 0);
+        var divergences = SingularGains.Divergences(_sweep);
+        var infinities = SingularGains.ThroughInfinity(_sweep);
+        SearchPieces(divergences, infinities);
+
+        var evidence = new OnsetEvidence(_sweep);
+        var found = _search.Crossings.Select(evidence.OfFlutter)
+            .Concat(divergences.Found.Where(IsInside).Select(evidence.OfDivergence))
+            .Concat(infinities.Found.Where(IsInside).Select(evidence.OfInfinity))
+            .OrderBy(o => o.Gain).ThenBy(o => o.Frequency).ToList();
+        var stretches = Merged(_search.Open);
+        var ledger = new IntervalLedger(_sweep, SamplesOf(_search.Steps), WithoutRepeats(found), stretches);
+        ledger.Run();
+        Report("done", 1);
+
+        var cautions = CautionFinder.Run(_sweep, ledger, stretches, divergences.IsRegular && infinities.IsRegular);
+        return new StabilityBoundary(
+            _path.ToString(), _path.Unit, _path.Nominal.Structure.Units, _path.Range.From, _path.Range.To, _path.ReleaseValue,
+            ledger.Onsets, ledger.Intervals, _options.KeepLoci ? LocusBuilder.Run(_search.Steps, _sweep.Model.Rate) : [],
+            new Completeness(
+                Coverage.Sampled, divergences.IsRegular && infinities.IsRegular ? Coverage.Complete : Coverage.Sampled,
+                _search.Steps.Select(s => s.Right.Gain - s.Left.Gain).DefaultIfEmpty(_path.Range.Width).Max(), _sweep.Decompositions),
+            cautions, ProvenanceOf.Sweep(_path, _options));
+    }
+
+    private static ImmutableArray<SweepSample> SamplesOf(List<SweepStep> steps)
+        => [.. steps.SelectMany(s => new[] { s.Left, s.Right }).DistinctBy(s => s.Gain).OrderBy(s => s.Gain)];
+
+    private static List<OpenStretch> Merged(List<OpenStretch> open)
+    {
+        var merged = new List<OpenStretch>();
+        foreach (var stretch in open.OrderBy(o => o.From))
+        {
+            if (merged.Count > 0 && stretch.From <= merged[^1].To)
+            {
+                merged[^1] = merged[^1] with { To = Math.Max(merged[^1].To, stretch.To) };
+            }
+            else
+            {
+                merged.Add(stretch);
+            }
+        }
+
+        return merged;
+    }
+
+    /// <summary>Two branches of equal frequency that cross together, as in a structure of two equal halves, are one onset.</summary>
+    private static List<OnsetDraft> WithoutRepeats(List<OnsetDraft> found)
+    {
+        var kept = new List<OnsetDraft>();
+        foreach (var onset in found)
+        {
+            bool repeats = kept.Count > 0 && kept[^1].Kind == onset.Kind && kept[^1].IsTogetherWith(onset)
+                && Math.Abs(kept[^1].Frequency.Radians - onset.Frequency.Radians) <= 1e-9 * onset.Frequency.Radians;
+            if (!repeats)
+            {
+                kept.Add(onset);
+            }
+        }
+
+        return kept;
+    }
+
+    private bool IsInside(SingularGain gain)
+        => gain.Gain - gain.Uncertainty > _path.Range.From && gain.Gain + gain.Uncertainty < _path.Range.To;
+
+    private void SearchPieces(SingularGains divergences, SingularGains infinities)
+    {
+        var range = _path.Range;
+        var barriers = divergences.Found.Concat(infinities.Found).OrderBy(g => g.Gain).ToList();
+        double from = range.From;
+        foreach (var barrier in barriers)
+        {
+            double inset = Math.Max(Inset * range.Width, 4 * barrier.Uncertainty);
+            if (barrier.Gain - inset > from)
+            {
+                _search.Run(from, barrier.Gain - inset);
+            }
+
+            from = Math.Max(from, barrier.Gain + inset);
+        }
+
+        if (from < range.To)
+        {
+            bool endsOnBarrier = barriers.Count > 0 && barriers[^1].Gain >= range.To;
+            _search.Run(from, endsOnBarrier ? range.To - (Inset * range.Width) : range.To);
+        }
+    }
+
+    private void Settled(double gain) => Report("sweep", (gain - _path.Range.From) / _path.Range.Width);
+
+    private void Report(string stage, double fraction) => _progress?.Report(new FinderProgress(stage, fraction, _sweep.Decompositions));
+}
+
+/// <summary>Chains the accepted steps into loci.</summary>
+internal static class LocusBuilder
+{
+    public static ImmutableArray<RootLocus> Run(List<SweepStep> steps, double rate)
+    {
+        var ordered = steps.OrderBy(s => s.Left.Gain).ToList();
+        if (ordered.Count == 0)
+        {
+            return [];
+        }
+
+        int n = ordered[0].Left.Values.Length;
+        int[] place = [.. Enumerable.Range(0, n)];
+        var points = new ImmutableArray<LocusPoint>.Builder[n];
+        SweepSample? at = null;
+        for (int k = 0; k < n; k++)
+        {
+            points[k] = ImmutableArray.CreateBuilder<LocusPoint>(ordered.Count + 1);
+        }
+
+        foreach (var step in ordered)
+        {
+            if (!ReferenceEquals(at, step.Left))
+            {
+                Move(at is null ? place : BranchMatch.Between(at, step.Left), step.Left);
+            }
+
+            Move(step.Match, step.Right);
+            at = step.Right;
+        }
+
+        return [.. points.Select(p => new RootLocus(p.ToImmutable()))];
+
+        void Move(int[] match, SweepSample sample)
+        {
+            for (int k = 0; k < n; k++)
+            {
+                place[k] = match[place[k]];
+                points[k].Add(new LocusPoint(sample.Gain, sample.Values[place[k]] * new Complex(rate, 0)));
+            }
+        }
+    }
+}

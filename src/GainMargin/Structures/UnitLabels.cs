@@ -1,0 +1,43 @@
+using System.Globalization;
+
+namespace GainMargin;
+
+/// <summary>
+/// Names of the units the caller works in. They are labels and convert nothing: any consistent set of units will do. Hertz
+/// is shown only when <see cref="Time"/> is <c>s</c>.
+/// </summary>
+public sealed record UnitLabels
+{
+    /// <summary>Unit of length, such as <c>m</c>.</summary>
+    public string? Length { get; init; }
+
+    /// <summary>Unit of force, such as <c>N</c>.</summary>
+    public string? Force { get; init; }
+
+    /// <summary>Unit of time, such as <c>s</c>.</summary>
+    public string? Time { get; init; }
+
+    internal static UnitLabels None { get; } = new();
+
+    internal bool IsSeconds => Time == "s";
+
+    internal string Show(Frequency frequency)
+    {
+        if (frequency.IsUnlimited)
+        {
+            return "unlimited";
+        }
+
+        string radians = frequency.Radians.ToString("G7", CultureInfo.InvariantCulture);
+        string time = string.IsNullOrWhiteSpace(Time) ? "unit time" : Time;
+        return IsSeconds
+            ? $"{radians} rad/s ({frequency.Cycles.ToString("G6", CultureInfo.InvariantCulture)} Hz)"
+            : $"{radians} rad/{time}";
+    }
+
+    internal string ShowRate(double rate)
+    {
+        string time = string.IsNullOrWhiteSpace(Time) ? "unit time" : Time;
+        return $"{rate.ToString("G6", CultureInfo.InvariantCulture)} 1/{time}";
+    }
+}
