@@ -1,58 +1,34 @@
 using GainMargin;
+using TallGantry;
 
-static ClosedLoop Two(double[] m, double[] d, double[] k, params LoopSetting[] loops)
-    => ClosedLoop.Create(ElasticStructure.FromRowMajor(["x", "y"], m, d, k), ControlLaw.Of(loops));
+// The job: before a position gain goes to the drive, know every gain at which the machine would flutter or diverge.
+string output = args.Length > 0 ? args[0] : Path.Combine(AppContext.BaseDirectory, "gantry-boundary.json");
+var range = GainRange.Between(0, 12);
 
-// P07
+Console.WriteLine("A tall gantry milling machine (invented data): position gain screened with the rate loop closed.");
+foreach (string scaleAt in new[] { "tool.x", "foot.x" })
 {
-    double c = 0.06, w = 1, q1 = 0.1;
-    var loop = FeedbackLoop.Create("q", Sensor.At("x"), Actuator.At("y"), new() { Position = -1 });
-    var cl = Two([1, 0, 0, 1], [c, 0, 0, c], [w * w, q1, 0, w * w], new LoopSetting(loop, 0.01));
-    Console.WriteLine(GainSweep.Run(GainPath.OneLoop(cl, "q", GainRange.Between(0, 1))));
-    Console.WriteLine($"expected {c * c * w * w / q1}");
+    var closed = ClosedLoop.Create(Machine.Structure(), Machine.Law(scaleAt));
+    var boundary = GainSweep.Run(GainPath.OneLoop(closed, Machine.Position, range));
+    var contribution = ClosedLoopAnalysis.ContributionOf(closed, Machine.Position);
+
+    Console.WriteLine($"\n=== Glass scale at {scaleAt}: sensor and motor {(contribution.IsCollocated ? "at one place" : "apart")} ===\n");
+    Console.WriteLine("What the position loop adds to the stiffness, N/m (rows driven, columns sensed):");
+    Console.WriteLine(contribution.Stiffness);
+    Console.WriteLine($"\nAt the release gain:\n{ClosedLoopAnalysis.Split(closed)}\n");
+    Console.WriteLine(boundary);
+    foreach (var onset in boundary.Onsets.Where(o => o.Kind == OnsetKind.Flutter).Take(1))
+    {
+        Console.WriteLine($"\nWhy, at the first onset ({onset.Gain:F3} m/min/mm):");
+        Console.WriteLine($"  mode: {onset.RightMode}");
+        Console.WriteLine($"  {onset.Energy}");
+    }
+
+    if (scaleAt == "tool.x")
+    {
+        using var file = File.Create(output);
+        ResultJson.Write(file, boundary);
+    }
 }
-// P22
-{
-    double c = 0.05;
-    var loop = FeedbackLoop.Create("v", Sensor.At("y"), Actuator.At("x"), new() { Rate = 1 });
-    var cl = Two([1, 0, 0, 1], [c, -c, -c, c], [1, -1, -1, 1], new LoopSetting(loop, 0.1));
-    Console.WriteLine(GainSweep.Run(GainPath.OneLoop(cl, "v", GainRange.Between(0, 1))));
-    Console.WriteLine(GainSweep.Run(GainPath.OneLoop(cl, "v", GainRange.Between(-1, 1))));
-    Console.WriteLine(ClosedLoopAnalysis.Split(cl));
-    foreach (var r in ClosedLoopAnalysis.Spectrum(cl).Roots) Console.WriteLine(r);
-}
-// P23
-{
-    var loop = FeedbackLoop.Create("g", Sensor.At("y"), Actuator.At("x"), new() { Position = -1 });
-    var cl = Two([1, 0, 0, 1], [0.02, 0, 0, 0.5], [1, 0, -1.44, 1.44], new LoopSetting(loop, 0.5));
-    Console.WriteLine(GainSweep.Run(GainPath.OneLoop(cl, "g", GainRange.Between(0, 3))));
-}
-// undamped, non-collocated rate
-{
-    var loop = FeedbackLoop.Create("v", Sensor.At("y"), Actuator.At("x"), new() { Rate = 1 });
-    var cl = Two([1, 0, 0, 1], [0, 0, 0, 0], [2, -1, -1, 1], new LoopSetting(loop, 0.1));
-    Console.WriteLine(GainSweep.Run(GainPath.OneLoop(cl, "v", GainRange.Between(0, 1))));
-}
-// acceleration through infinity
-{
-    var s = ElasticStructure.FromRowMajor(["x"], [1], [0.1], [1]);
-    var cl = ClosedLoop.Create(s, ControlLaw.Of(new LoopSetting(FeedbackLoop.Create("a", Sensor.At("x"), Actuator.At("x"), new() { Acceleration = 1 }), 0.1)));
-    Console.WriteLine(GainSweep.Run(GainPath.OneLoop(cl, "a", GainRange.Between(-2, 1))));
-}
-// touch: D = 1 - 2f + f^2
-{
-    var s = ElasticStructure.FromRowMajor(["x"], [1], [1], [4]);
-    var a = FeedbackLoop.Create("in", Sensor.At("x"), Actuator.At("x"), new() { Rate = 1 });
-    var b = FeedbackLoop.Create("out", Sensor.At("x"), Actuator.At("x"), new() { Rate = 1 });
-    var cl = ClosedLoop.Create(s, ControlLaw.Cascade(new(a, -2), new(b, -0.5)));
-    Console.WriteLine(GainSweep.Run(GainPath.CommonFactor(cl, GainRange.Between(0, 3.1))));
-}
-// lossless Ziegler-like by one loop: K = [[2-p, p-1],[-1,1]] => K0 + p [-1, 1; 0 0]
-{
-    var loop = FeedbackLoop.Create("p", Sensor.Difference("x", "y"), Actuator.At("x"), new() { Position = -1 });
-    var cl = Two([3, 1, 1, 1], [0, 0, 0, 0], [2, -1, -1, 1], new LoopSetting(loop, 0.5));
-    Console.WriteLine(GainSweep.Run(GainPath.OneLoop(cl, "p", GainRange.Between(0, 8))));
-    var cl2 = Two([3, 1, 1, 1], [0.2, -0.1, -0.1, 0.1], [2, -1, -1, 1], new LoopSetting(loop, 0.5));
-    Console.WriteLine(GainSweep.Run(GainPath.OneLoop(cl2, "p", GainRange.Between(0, 8))));
-    Console.WriteLine($"expected {41.0 / 28 + 0.005}");
-}
+
+Console.WriteLine($"\nThe boundary with the scale at the tool is in {output}");

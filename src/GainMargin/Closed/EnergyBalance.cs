@@ -2,6 +2,8 @@ using System.Collections.Immutable;
 using System.Globalization;
 using System.Numerics;
 using System.Text;
+using System.Text.Json.Serialization;
+using GainMargin.Numerics;
 using MathNet.Numerics.LinearAlgebra;
 
 namespace GainMargin;
@@ -22,6 +24,7 @@ public readonly record struct LoopWork(string Loop, double Work);
 /// </remarks>
 public sealed class EnergyBalance
 {
+    [JsonConstructor]
     internal EnergyBalance(double dissipative, double circulatory, double skewMass, double structure, ImmutableArray<LoopWork> loops)
     {
         Dissipative = dissipative;
@@ -47,6 +50,7 @@ public sealed class EnergyBalance
     public ImmutableArray<LoopWork> Loops { get; }
 
     /// <summary>What is left over; zero but for rounding at a flutter onset.</summary>
+    [JsonIgnore]
     public double Residual => Dissipative + Circulatory + SkewMass;
 
     /// <summary>The works in per cent of the peak kinetic energy.</summary>
@@ -84,9 +88,9 @@ public sealed class EnergyBalance
             byLoops += work;
         }
 
-        double dissipative = Share(-Math.PI * omega * Form(matrices.Damping, v).Real);
-        double circulatory = Share(-Math.PI * Form(matrices.Stiffness, v).Imaginary);
-        double skewMass = Share(Math.PI * omega * omega * Form(matrices.Mass, v).Imaginary);
+        double dissipative = Share(-Math.PI * omega * Form(Dense.SymmetricPart(matrices.Damping), v).Real);
+        double circulatory = Share(-Math.PI * Form(Dense.SkewPart(matrices.Stiffness), v).Imaginary);
+        double skewMass = Share(Math.PI * omega * omega * Form(Dense.SkewPart(matrices.Mass), v).Imaginary);
         var open = closed.Pencil.Open;
         return new EnergyBalance(dissipative, circulatory, skewMass, Share(Work(open.Mass, open.Damping, open.Stiffness, omega, v)), loops.ToImmutable());
     }
@@ -94,7 +98,7 @@ public sealed class EnergyBalance
     private static double Work(Matrix<double> m, Matrix<double> d, Matrix<double> k, double omega, Complex[] v)
         => (-Math.PI * omega * Form(d, v).Real) - (Math.PI * Form(k, v).Imaginary) + (Math.PI * omega * omega * Form(m, v).Imaginary);
 
-    /// <summary><c>vᴴAv</c>: its real part is that of the symmetric part, its imaginary part that of the skew part.</summary>
+    /// <summary><c>vᴴAv</c>: its real part is that of the symmetric part, its imaginary part <c>1/i</c> times that of the skew part.</summary>
     private static Complex Form(Matrix<double> a, Complex[] v)
     {
         var sum = Complex.Zero;

@@ -7,28 +7,21 @@ namespace GainMargin;
 /// <summary>
 /// All roots of a closed loop at one set of gains, in normalised coordinates, rigid motion split off: the state matrix of
 /// the elastic coordinates <c>c</c> and the drift rates <c>u</c> is <c>[0 I 0; −K_cc −D_cc −D_cu; −K_uc −D_uc −D_uu]</c>.
+/// Rigid motion known from its left side is split off the transposed matrices, which have the same roots.
 /// </summary>
 internal sealed class ModalSolution
 {
     private readonly LoopedPencil _model;
-    private readonly Complex[][] _driven;
-    private readonly Complex[][] _displacement;
-    private readonly Complex[][] _velocity;
-    private readonly Complex[][] _acceleration;
+    private readonly QuadraticPencil _closed;
 
-    private ModalSolution(
-        LoopedPencil model, EigenSystem system, Complex[][] right, Complex[][] left,
-        Complex[][] driven, Complex[][] displacement, Complex[][] velocity, Complex[][] acceleration)
+    private ModalSolution(LoopedPencil model, QuadraticPencil closed, EigenSystem system, Complex[][] right, Complex[][] left)
     {
         _model = model;
+        _closed = closed;
         Values = system.Values;
         Uncertainty = system.Uncertainty;
         Right = right;
         Left = left;
-        _driven = driven;
-        _displacement = displacement;
-        _velocity = velocity;
-        _acceleration = acceleration;
     }
 
     /// <summary>Roots other than the zero roots of rigid motion.</summary>
@@ -52,46 +45,47 @@ internal sealed class ModalSolution
         }
 
         int n = model.Order;
-        var inverseMass = ModelHasMassFeedback(model) ? Dense.TrySolve(closed.Mass, Dense.Identity(n)) : null;
-        if (inverseMass is null && ModelHasMassFeedback(model))
+        bool massFeedback = HasMassFeedback(model);
+        var inverseMass = massFeedback ? Dense.TrySolve(Side(closed.Mass), Dense.Identity(n)) : null;
+        if (massFeedback && inverseMass is null)
         {
             throw new NumericalFailureException("closed-loop mass", "The closed-loop mass matrix is singular at this gain.");
         }
 
-        var k = inverseMass is null ? closed.Stiffness : inverseMass * closed.Stiffness;
-        var d = inverseMass is null ? closed.Damping : inverseMass * closed.Damping;
+        var k = inverseMass is null ? Side(closed.Stiffness) : inverseMass * Side(closed.Stiffness);
+        var d = inverseMass is null ? Side(closed.Damping) : inverseMass * Side(closed.Damping);
         var system = RealEigen.Solve(StateMatrix(k, d, rigid));
         int count = system.Values.Length;
+        int nc = rigid.Elastic.ColumnCount;
         var right = new Complex[count][];
         var left = new Complex[count][];
-        var driven = new Complex[count][];
-        var displacement = new Complex[count][];
-        var velocity = new Complex[count][];
-        var acceleration = new Complex[count][];
         for (int i = 0; i < count; i++)
         {
-            int nc = rigid.Elastic.ColumnCount;
+            if (system.Values[i].Imaginary < 0)
+            {
+                (right[i], left[i]) = (Conjugate(right[i - 1]), Conjugate(left[i - 1]));
+                continue;
+            }
+
             var x = system.Right[i];
-            var q = Times(rigid.Elastic, x.AsSpan(0, nc));
-            var rate = Sum(Times(rigid.Elastic, x.AsSpan(nc, nc)), Times(rigid.Drifting, x.AsSpan(2 * nc)));
-            var second = Negated(Sum(Times(k, q), Times(d, rate)));
-            right[i] = NullVector(system.Values[i], q, Times(rigid.Drifting, x.AsSpan(2 * nc)), second, rigid);
+            var q = Dense.Times(rigid.Elastic, x.AsSpan(0, nc));
+            var drift = Dense.Times(rigid.Drifting, x.AsSpan(2 * nc));
+            var rate = Sum(Dense.Times(rigid.Elastic, x.AsSpan(nc, nc)), drift);
+            var v = NullVector(system.Values[i], q, drift, Negated(Sum(Dense.Times(k, q), Dense.Times(d, rate))), rigid);
             var y = system.Left[i];
-            var w = Sum(Times(rigid.Elastic, y.AsSpan(nc, nc)), Times(rigid.Drifting, y.AsSpan(2 * nc)));
-            w = inverseMass is null ? w : TransposeTimes(inverseMass, w);
-            driven[i] = Array.ConvertAll(TransposeTimes(model.Drive, w), Complex.Conjugate);
-            displacement[i] = TransposeTimes(model.Sense, q);
-            velocity[i] = TransposeTimes(model.Sense, rate);
-            acceleration[i] = TransposeTimes(model.Sense, second);
-            left[i] = Unit(w);
+            var w = Sum(Dense.Times(rigid.Elastic, y.AsSpan(nc, nc)), Dense.Times(rigid.Drifting, y.AsSpan(2 * nc)));
+            w = Unit(inverseMass is null ? w : Dense.TransposeTimes(inverseMass, w));
+            (right[i], left[i]) = rigid.OnLeft ? (Conjugate(w), Conjugate(v)) : (v, w);
         }
 
-        return new ModalSolution(model, system, right, left, driven, displacement, velocity, acceleration);
+        return new ModalSolution(model, closed, system, right, left);
+
+        Matrix<double> Side(Matrix<double> a) => rigid.OnLeft ? a.Transpose() : a;
     }
 
     /// <summary>
     /// Derivative of every root where the gains change at given slopes,
-    /// <c>s′ = −wᴴ(s²M′ + sD′ + K′)v</c> with <c>w</c>, <c>v</c> scaled to <c>wᴴQ_s v = 1</c>.
+    /// <c>s′ = −wᴴ(s²M′ + sD′ + K′)v / wᴴ(2sM + D)v</c>.
     /// </summary>
     public Complex[] Slopes(ReadOnlySpan<double> gains, ReadOnlySpan<double> slopes)
     {
@@ -99,25 +93,34 @@ internal sealed class ModalSolution
         var result = new Complex[Values.Length];
         for (int i = 0; i < result.Length; i++)
         {
+            if (Values[i].Imaginary < 0)
+            {
+                result[i] = Complex.Conjugate(result[i - 1]);
+                continue;
+            }
+
+            var s = Values[i];
+            var driven = Dense.TransposeTimes(_model.Drive, Left[i]);
+            var sensed = Dense.TransposeTimes(_model.Sense, Right[i]);
             var sum = Complex.Zero;
             for (int p = 0; p < _model.LoopCount; p++)
             {
                 var force = Complex.Zero;
                 for (int q = 0; q < _model.LoopCount; q++)
                 {
-                    force += (c.Stiffness[p, q] * _displacement[i][q]) + (c.Damping[p, q] * _velocity[i][q]) + (c.Mass[p, q] * _acceleration[i][q]);
+                    force += (c.Stiffness[p, q] + (s * (c.Damping[p, q] + (s * c.Mass[p, q])))) * sensed[q];
                 }
 
-                sum -= _driven[i][p] * force;
+                sum -= Complex.Conjugate(driven[p]) * force;
             }
 
-            result[i] = sum;
+            result[i] = sum / BorderedSystem.Inner(Left[i], _closed.SlopeTimes(s, Right[i]));
         }
 
         return result;
     }
 
-    private static bool ModelHasMassFeedback(LoopedPencil model)
+    private static bool HasMassFeedback(LoopedPencil model)
     {
         foreach (var ratio in model.Ratios)
         {
@@ -165,7 +168,7 @@ internal sealed class ModalSolution
     /// </summary>
     private static Complex[] NullVector(Complex s, Complex[] elastic, Complex[] drift, Complex[] acceleration, RigidMotion rigid)
     {
-        var free = Times(rigid.Free, TransposeTimes(rigid.Free, acceleration));
+        var free = Dense.Times(rigid.Free, Dense.TransposeTimes(rigid.Free, acceleration));
         var shape = new Complex[elastic.Length];
         for (int i = 0; i < shape.Length; i++)
         {
@@ -181,38 +184,9 @@ internal sealed class ModalSolution
         return length == 0 ? v : Array.ConvertAll(v, c => c / length);
     }
 
+    private static Complex[] Conjugate(Complex[] v) => Array.ConvertAll(v, Complex.Conjugate);
+
     private static Complex[] Sum(Complex[] a, Complex[] b) => [.. a.Zip(b, (x, y) => x + y)];
 
     private static Complex[] Negated(Complex[] a) => Array.ConvertAll(a, x => -x);
-
-    private static Complex[] Times(Matrix<double> a, ReadOnlySpan<Complex> x)
-    {
-        var y = new Complex[a.RowCount];
-        for (int j = 0; j < a.ColumnCount; j++)
-        {
-            for (int i = 0; i < y.Length; i++)
-            {
-                y[i] += a[i, j] * x[j];
-            }
-        }
-
-        return y;
-    }
-
-    private static Complex[] TransposeTimes(Matrix<double> a, ReadOnlySpan<Complex> x)
-    {
-        var y = new Complex[a.ColumnCount];
-        for (int j = 0; j < y.Length; j++)
-        {
-            var sum = Complex.Zero;
-            for (int i = 0; i < a.RowCount; i++)
-            {
-                sum += a[i, j] * x[i];
-            }
-
-            y[j] = sum;
-        }
-
-        return y;
-    }
 }

@@ -1,6 +1,6 @@
 using System.Numerics;
+using GainMargin.Numerics;
 using MathNet.Numerics.LinearAlgebra;
-using MathNet.Numerics.LinearAlgebra.Complex;
 
 namespace GainMargin;
 
@@ -14,7 +14,7 @@ internal sealed record QuadraticPencil(Matrix<double> Mass, Matrix<double> Dampi
     public Matrix<Complex> At(Complex s)
     {
         var square = s * s;
-        return DenseMatrix.Create(Order, Order, (i, j) => (square * Mass[i, j]) + (s * Damping[i, j]) + Stiffness[i, j]);
+        return MathNet.Numerics.LinearAlgebra.Complex.DenseMatrix.Create(Order, Order, (i, j) => (square * Mass[i, j]) + (s * Damping[i, j]) + Stiffness[i, j]);
     }
 
     /// <summary><c>Q(s) v</c>.</summary>
@@ -25,16 +25,20 @@ internal sealed record QuadraticPencil(Matrix<double> Mass, Matrix<double> Dampi
 
     private Complex[] Combine(Complex m, Complex d, Complex k, Complex[] v)
     {
-        var product = new Complex[Order];
-        for (int i = 0; i < Order; i++)
+        int n = Order;
+        double[] mass = Dense.Columnwise(Mass);
+        double[] damping = Dense.Columnwise(Damping);
+        double[] stiffness = Dense.Columnwise(Stiffness);
+        var product = new Complex[n];
+        for (int j = 0, at = 0; j < n; j++)
         {
-            var sum = Complex.Zero;
-            for (int j = 0; j < Order; j++)
+            var (mv, dv, kv) = (m * v[j], d * v[j], k * v[j]);
+            for (int i = 0; i < n; i++, at++)
             {
-                sum += ((m * Mass[i, j]) + (d * Damping[i, j]) + (k * Stiffness[i, j])) * v[j];
+                product[i] = new Complex(
+                    product[i].Real + (mass[at] * mv.Real) + (damping[at] * dv.Real) + (stiffness[at] * kv.Real),
+                    product[i].Imaginary + (mass[at] * mv.Imaginary) + (damping[at] * dv.Imaginary) + (stiffness[at] * kv.Imaginary));
             }
-
-            product[i] = sum;
         }
 
         return product;

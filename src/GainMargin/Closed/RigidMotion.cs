@@ -8,22 +8,39 @@ namespace GainMargin;
 /// (<see cref="Drifting"/>, one zero root each) and of those that do not (<see cref="Free"/>, two zero roots each), and
 /// of the complement. Splitting them off exactly keeps their defective zero roots out of the eigenvalue problem.
 /// </summary>
-internal sealed record RigidMotion(Matrix<double> Elastic, Matrix<double> Drifting, Matrix<double> Free)
+/// <param name="Elastic">Complement.</param>
+/// <param name="Drifting">Motions that meet damping only.</param>
+/// <param name="Free">Motions that meet neither.</param>
+/// <param name="OnLeft">
+/// Whether these are left null vectors: a motion that no force reaches, though a sensor may see it, so that the right null
+/// vector depends on the gain.
+/// </param>
+internal sealed record RigidMotion(Matrix<double> Elastic, Matrix<double> Drifting, Matrix<double> Free, bool OnLeft)
 {
     public int ZeroRoots => Drifting.ColumnCount + (2 * Free.ColumnCount);
 
+    /// <summary>Rigid motion of one closed loop.</summary>
+    public static RigidMotion Of(QuadraticPencil closed)
+        => Larger(
+            Find(closed.Stiffness, closed.Damping, false),
+            Find(closed.Stiffness.Transpose(), closed.Damping.Transpose(), true));
+
+    /// <summary>The side that accounts for more zero roots; the right one where both do.</summary>
+    public static RigidMotion Larger(RigidMotion right, RigidMotion left) => left.ZeroRoots > right.ZeroRoots ? left : right;
+
     /// <param name="stiffness">Everything that can resist displacement, stacked in rows.</param>
     /// <param name="damping">Everything that can resist velocity, stacked in rows.</param>
-    public static RigidMotion Find(Matrix<double> stiffness, Matrix<double> damping)
+    /// <param name="onLeft">Whether the rows belong to the transposed matrices.</param>
+    public static RigidMotion Find(Matrix<double> stiffness, Matrix<double> damping, bool onLeft)
     {
         int n = stiffness.ColumnCount;
         var (rigid, elastic) = Dense.NullSpace(stiffness, Tolerances.NullSpace(n, stiffness.FrobeniusNorm()));
         if (rigid.ColumnCount == 0)
         {
-            return new RigidMotion(elastic, rigid, rigid);
+            return new RigidMotion(elastic, rigid, rigid, onLeft);
         }
 
         var (free, drifting) = Dense.NullSpace(damping * rigid, Tolerances.NullSpace(n, damping.FrobeniusNorm()));
-        return new RigidMotion(elastic, rigid * drifting, rigid * free);
+        return new RigidMotion(elastic, rigid * drifting, rigid * free, onLeft);
     }
 }

@@ -1,3 +1,4 @@
+using System.Text.Json.Serialization;
 using GainMargin.Numerics;
 
 namespace GainMargin;
@@ -10,9 +11,11 @@ namespace GainMargin;
 public readonly record struct RootCount(int Growing, int Decaying, int Marginal, int Undecided)
 {
     /// <summary>All roots.</summary>
+    [JsonIgnore]
     public int Total => Growing + Decaying + Marginal + Undecided;
 
     /// <summary>The verdict that the count alone gives.</summary>
+    [JsonIgnore]
     public StabilityVerdict Verdict
         => Growing > 0 ? StabilityVerdict.Unstable
         : Undecided > 0 || Total == 0 ? StabilityVerdict.Undecided

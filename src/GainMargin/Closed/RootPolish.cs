@@ -36,7 +36,7 @@ internal static class RootPolish
             right = Unit(system.Right);
             left = Unit(system.Left);
             s += change;
-            if (size <= rounding || size >= 0.5 * previous)
+            if (size <= rounding || (size >= 0.5 * previous && size <= Tolerances.Stagnation * rounding))
             {
                 return new PolishedRoot(s, rounding + size, right, left);
             }

@@ -12,12 +12,12 @@ internal static class SpectrumFinder
         cancellation.ThrowIfCancellationRequested();
         var model = new NormalisedModel(closed.Pencil);
         var hat = model.Hat.At(closed.Gains);
-        var rigid = RigidMotion.Find(hat.Stiffness, hat.Damping);
+        var rigid = RigidMotion.Of(hat);
         var roots = RootSet.Polished(model, closed.Gains, rigid);
         cancellation.ThrowIfCancellationRequested();
         var even = model.Even.At(closed.Gains);
         var all = ImmutableArray.CreateBuilder<SpectrumRoot>();
-        AddZeroRoots(all, closed, model, rigid);
+        AddZeroRoots(all, closed, model, hat, rigid);
         for (int i = 0; i < roots.Values.Length; i++)
         {
             var right = model.HatToEven(roots.Solution.Right[i]);
@@ -41,20 +41,31 @@ internal static class SpectrumFinder
         return byCount == StabilityVerdict.Undecided && !facts.IsEmpty ? facts[0].Verdict : byCount;
     }
 
-    private static void AddZeroRoots(ImmutableArray<SpectrumRoot>.Builder all, ClosedLoop closed, NormalisedModel model, RigidMotion rigid)
+    private static void AddZeroRoots(
+        ImmutableArray<SpectrumRoot>.Builder all, ClosedLoop closed, NormalisedModel model, QuadraticPencil hat, RigidMotion rigid)
     {
-        foreach (var (basis, roots) in new[] { (rigid.Drifting, 1), (rigid.Free, 2) })
+        int n = hat.Order;
+        double tolerance = Tolerances.NullSpace(n, hat.Stiffness.FrobeniusNorm());
+        var basis = rigid.Free.Append(rigid.Drifting);
+        if (basis.ColumnCount == 0)
         {
-            for (int j = 0; j < basis.ColumnCount; j++)
+            return;
+        }
+
+        var other = Dense.NullSpace(rigid.OnLeft ? hat.Stiffness : hat.Stiffness.Transpose(), tolerance).Null;
+        for (int j = 0; j < basis.ColumnCount; j++)
+        {
+            var known = Mode(basis.Column(j));
+            var counterpart = j < other.ColumnCount ? Mode(other.Column(j)) : known;
+            var (right, left) = rigid.OnLeft ? (counterpart, known) : (known, counterpart);
+            for (int k = 0; k < (j < rigid.Free.ColumnCount ? 2 : 1); k++)
             {
-                var even = model.HatToEven([.. basis.Column(j).Select(v => new Complex(v, 0))]);
-                var mode = NamedVector.Scaled(closed.Structure.Dofs, model.EvenToPhysical(even));
-                for (int k = 0; k < roots; k++)
-                {
-                    all.Add(new SpectrumRoot(0, 0, StabilityVerdict.Marginal, 0, mode, mode));
-                }
+                all.Add(new SpectrumRoot(0, 0, StabilityVerdict.Marginal, 0, right, left));
             }
         }
+
+        NamedVector Mode(IEnumerable<double> column)
+            => NamedVector.Scaled(closed.Structure.Dofs, model.EvenToPhysical(model.HatToEven([.. column.Select(v => new Complex(v, 0))])));
     }
 }
 

@@ -1,4 +1,5 @@
 using MathNet.Numerics.LinearAlgebra;
+using MathNet.Numerics.LinearAlgebra.Double;
 
 namespace GainMargin.Numerics;
 
@@ -13,7 +14,7 @@ internal static class Balancing
     public static (Matrix<double> Balanced, double[] Scale) Balance(Matrix<double> a)
     {
         int n = a.RowCount;
-        var b = a.Clone();
+        double[] b = a.ToColumnMajorArray();
         double[] scale = new double[n];
         Array.Fill(scale, 1.0);
         for (int pass = 0, changed = 1; changed > 0 && pass < MaximumPasses; pass++)
@@ -21,7 +22,7 @@ internal static class Balancing
             changed = 0;
             for (int i = 0; i < n; i++)
             {
-                double f = Factor(b, i);
+                double f = Factor(b, n, i);
                 if (f == 1)
                 {
                     continue;
@@ -33,26 +34,26 @@ internal static class Balancing
                 {
                     if (j != i)
                     {
-                        b[j, i] *= f;
-                        b[i, j] /= f;
+                        b[(i * n) + j] *= f;
+                        b[(j * n) + i] /= f;
                     }
                 }
             }
         }
 
-        return (b, scale);
+        return (new DenseMatrix(n, n, b), scale);
     }
 
-    private static double Factor(Matrix<double> b, int i)
+    private static double Factor(double[] b, int n, int i)
     {
         double column = 0;
         double row = 0;
-        for (int j = 0; j < b.RowCount; j++)
+        for (int j = 0; j < n; j++)
         {
             if (j != i)
             {
-                column += Math.Abs(b[j, i]);
-                row += Math.Abs(b[i, j]);
+                column += Math.Abs(b[(i * n) + j]);
+                row += Math.Abs(b[(j * n) + i]);
             }
         }
 

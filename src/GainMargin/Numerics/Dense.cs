@@ -9,6 +9,51 @@ internal static class Dense
 {
     public static Matrix<double> Copy(Matrix<double> matrix) => DenseMatrix.OfMatrix(matrix);
 
+    /// <summary>The entries column by column; the matrix's own storage where it is dense, so not to be written to.</summary>
+    public static double[] Columnwise(Matrix<double> matrix) => matrix.AsColumnMajorArray() ?? matrix.ToColumnMajorArray();
+
+    /// <summary><c>A x</c>.</summary>
+    public static Complex[] Times(Matrix<double> a, ReadOnlySpan<Complex> x)
+    {
+        int n = a.RowCount;
+        double[] values = Columnwise(a);
+        var y = new Complex[n];
+        for (int j = 0; j < a.ColumnCount; j++)
+        {
+            var column = values.AsSpan(j * n, n);
+            var (re, im) = (x[j].Real, x[j].Imaginary);
+            for (int i = 0; i < n; i++)
+            {
+                y[i] = new Complex(y[i].Real + (column[i] * re), y[i].Imaginary + (column[i] * im));
+            }
+        }
+
+        return y;
+    }
+
+    /// <summary><c>Aᵀ x</c>.</summary>
+    public static Complex[] TransposeTimes(Matrix<double> a, ReadOnlySpan<Complex> x)
+    {
+        int n = a.RowCount;
+        double[] values = Columnwise(a);
+        var y = new Complex[a.ColumnCount];
+        for (int j = 0; j < y.Length; j++)
+        {
+            var column = values.AsSpan(j * n, n);
+            double re = 0;
+            double im = 0;
+            for (int i = 0; i < n; i++)
+            {
+                re += column[i] * x[i].Real;
+                im += column[i] * x[i].Imaginary;
+            }
+
+            y[j] = new Complex(re, im);
+        }
+
+        return y;
+    }
+
     public static Matrix<double> Zero(int rows, int columns) => DenseMatrix.Create(rows, columns, 0);
 
     public static Matrix<double> Identity(int n) => DenseMatrix.CreateIdentity(n);
@@ -52,6 +97,14 @@ internal static class Dense
         int rank = svd.S.Count(s => s > tolerance);
         var v = svd.VT.Transpose();
         return (Columns(v, rank, n), Columns(v, 0, rank));
+    }
+
+    /// <summary>Right and left singular vectors of the smallest singular value of a square matrix.</summary>
+    public static (Complex[] Right, Complex[] Left) SmallestSingularVectors(Matrix<double> a)
+    {
+        int last = a.RowCount - 1;
+        var svd = a.Svd();
+        return ([.. svd.VT.Row(last).Select(x => new Complex(x, 0))], [.. svd.U.Column(last).Select(x => new Complex(x, 0))]);
     }
 
     public static Matrix<double> Columns(Matrix<double> a, int from, int to)

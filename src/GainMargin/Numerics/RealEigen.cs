@@ -89,23 +89,15 @@ internal static class RealEigen
     private static EigenSystem Unpack(Complex[] values, Matrix<double> packed, double[] scale, double backward, out double worst)
     {
         int n = values.Length;
+        double[] columns = packed.ToColumnMajorArray();
         for (int j = 0; j < n; j++)
         {
-            bool pair = values[j].Imaginary != 0;
-            double length = pair ? Hypot(packed, j, j + 1) : packed.Column(j).L2Norm();
-            int last = pair ? j + 1 : j;
-            for (int k = j; k <= last; k++)
-            {
-                for (int i = 0; i < n; i++)
-                {
-                    packed[i, k] /= length;
-                }
-            }
-
-            j = last;
+            int width = values[j].Imaginary != 0 ? 2 : 1;
+            Scale(columns.AsSpan(j * n, width * n));
+            j += width - 1;
         }
 
-        var inverse = packed.Inverse();
+        double[] inverse = Dense.Columnwise(new DenseMatrix(n, n, columns).Inverse());
         var right = new Complex[n][];
         var left = new Complex[n][];
         double[] uncertainty = new double[n];
@@ -118,10 +110,11 @@ internal static class RealEigen
             double leftSquared = 0;
             for (int i = 0; i < n; i++)
             {
-                double im = pair ? packed[i, j + 1] : 0;
-                var w = pair ? new Complex(inverse[j, i] / 2, inverse[j + 1, i] / 2) : new Complex(inverse[j, i], 0);
+                double im = pair ? columns[((j + 1) * n) + i] : 0;
+                int row = i * n;
+                var w = pair ? new Complex(inverse[row + j] / 2, inverse[row + j + 1] / 2) : new Complex(inverse[row + j], 0);
                 leftSquared += (w.Real * w.Real) + (w.Imaginary * w.Imaginary);
-                right[j][i] = new Complex(packed[i, j], im) * scale[i];
+                right[j][i] = new Complex(columns[(j * n) + i], im) * scale[i];
                 left[j][i] = w / scale[i];
             }
 
@@ -150,11 +143,19 @@ internal static class RealEigen
         return new EigenSystem(values, right, left, uncertainty);
     }
 
-    private static double Hypot(Matrix<double> packed, int real, int imaginary)
+    private static void Scale(Span<double> vector)
     {
-        double re = packed.Column(real).L2Norm();
-        double im = packed.Column(imaginary).L2Norm();
-        return Math.Sqrt((re * re) + (im * im));
+        double sum = 0;
+        foreach (double x in vector)
+        {
+            sum += x * x;
+        }
+
+        double length = Math.Sqrt(sum);
+        for (int i = 0; i < vector.Length; i++)
+        {
+            vector[i] /= length;
+        }
     }
 
     private static void Normalise(Complex[] right, Complex[] left)

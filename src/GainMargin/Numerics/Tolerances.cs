@@ -10,6 +10,9 @@ internal static class Tolerances
     /// <remarks>A real double value splits into a pair at a distance of √ε; this leaves a factor of seven.</remarks>
     public const double RealParameter = 1e-7;
 
+    /// <summary>A Newton iteration whose steps no longer shrink has arrived if they are within this multiple of rounding.</summary>
+    public const double Stagnation = 1e3;
+
     /// <summary>Largest eigenvalue condition number that first-order error bounds are trusted with.</summary>
     public const double LargestCondition = 1e-1 / Epsilon;
 

@@ -33,6 +33,28 @@ internal static class BranchMatch
         return match;
     }
 
+    /// <summary>
+    /// Whether root <paramref name="i"/> could nearly as well be another root of the other side of the axis: then two
+    /// branches that change sides in one step would look as if neither did.
+    /// </summary>
+    public static bool IsAmbiguous(SweepSample left, SweepSample right, int[] match, int i)
+    {
+        double half = 0.5 * (right.Gain - left.Gain);
+        var ahead = Ahead(left, i, half);
+        var chosen = right.Values[match[i]];
+        double own = Complex.Abs(ahead - Ahead(right, match[i], -half));
+        for (int k = 0; k < right.Values.Length; k++)
+        {
+            if (k != match[i] && right.Values[k].Imaginary > 0 && right.Values[k].Real * chosen.Real < 0
+                && Complex.Abs(ahead - Ahead(right, k, -half)) < 2 * own)
+            {
+                return true;
+            }
+        }
+
+        return false;
+    }
+
     private static int[] Where(SweepSample sample, Func<Complex, bool> holds)
         => [.. Enumerable.Range(0, sample.Values.Length).Where(i => holds(sample.Values[i]))];
 

@@ -1,4 +1,5 @@
 using System.Numerics;
+using GainMargin.Numerics;
 
 namespace GainMargin;
 
@@ -60,9 +61,9 @@ internal static class FlutterPolish
             }
 
             double size = Math.Abs(dGain);
-            if (size <= rounding || size >= 0.5 * previous)
+            if (size <= rounding || (size >= 0.5 * previous && size <= Tolerances.Stagnation * rounding))
             {
-                double uncertainty = rounding + size + (Tolerances(gain));
+                double uncertainty = rounding + size + (Tolerances.Epsilon * Math.Abs(gain));
                 return gain < least - uncertainty || gain > greatest + uncertainty
                     ? null
                     : new FlutterCrossing(gain, uncertainty, omega, slope, right, left, false);
@@ -72,7 +73,5 @@ internal static class FlutterPolish
         }
 
         return null;
-
-        static double Tolerances(double value) => Numerics.Tolerances.Epsilon * Math.Abs(value);
     }
 }

@@ -17,6 +17,7 @@ internal sealed record SweepStep(SweepSample Left, SweepSample Right, int[] Matc
 internal sealed class FlutterSearch
 {
     private const double SmallDeparture = 0.2;
+    private const double SharpTouch = 1e-4;
 
     private readonly SweepModel _sweep;
     private readonly SweepOptions _options;
@@ -43,13 +44,12 @@ internal sealed class FlutterSearch
     public void Run(double from, double to)
     {
         (_pieceFrom, _pieceTo) = (from, to);
-        double step = _options.MaximumStep * _sweep.Path.Range.Width;
-        int count = Math.Max(1, (int)Math.Ceiling((to - from) / step));
         var left = _sweep.SampleAt(from);
-        for (int i = 1; i <= count; i++)
+        double[] grid = SweepGrid.Between(from, to, _sweep.Path.Range.Width, _options.MaximumStep);
+        for (int i = 1; i < grid.Length; i++)
         {
-            double at = i == count ? to : from + ((to - from) * i / count);
-            var right = i == count ? _sweep.SampleAt(at) : SampleOffAxis(at, 0.05 * (to - from) / count);
+            bool last = i == grid.Length - 1;
+            var right = last ? _sweep.SampleAt(to) : SampleOffAxis(grid[i], 0.05 * (grid[i] - grid[i - 1]));
             Resolve(left, right);
             left = right;
             _settled(left.Gain);
@@ -124,7 +124,7 @@ internal sealed class FlutterSearch
 
             double turn = Math.Min(Math.Abs(left.Values[before].Real), Math.Abs(right.Values[after].Real));
             bool turns = left.Values[before].Real * right.Values[after].Real > 0 && !OnAxis(left, before) && !OnAxis(right, after);
-            if (!turns || Math.Abs(sample.Slopes[k].Real) * width > SmallDeparture * turn)
+            if (!turns || Math.Abs(sample.Slopes[k].Real) * width > SmallDeparture * turn || sample.Uncertainty[k] > SharpTouch * turn)
             {
                 return SampleOffAxis(at, 0.1 * width);
             }
@@ -189,6 +189,11 @@ internal sealed class FlutterSearch
                 if (OnAxis(left, i) && OnAxis(right, j) && IsFlat(left, i, width) && IsFlat(right, j, width))
                 {
                     continue;
+                }
+
+                if (BranchMatch.IsAmbiguous(left, right, match, i))
+                {
+                    return 0.5;
                 }
 
                 var curve = new CubicHermite(a.Real, left.Slopes[i].Real, b.Real, right.Slopes[j].Real, width);

@@ -7,10 +7,11 @@ namespace GainMargin;
 public sealed class ClosestApproach
 {
     [JsonConstructor]
-    internal ClosestApproach(double gain, Complex root)
+    internal ClosestApproach(double gain, Complex root, double dampingRatio)
     {
         Gain = gain;
         Root = root;
+        DampingRatio = dampingRatio;
     }
 
     /// <summary>Gain at which it was found.</summary>
@@ -19,9 +20,8 @@ public sealed class ClosestApproach
     /// <summary>The root <c>s</c>.</summary>
     public Complex Root { get; }
 
-    /// <summary>Damping ratio <c>ζ = −Re s/|s|</c>, negative where it grows; zero for a zero root.</summary>
-    [JsonIgnore]
-    public double DampingRatio => Root.Real == 0 ? 0 : -Root.Real / Complex.Abs(Root);
+    /// <summary>Damping ratio <c>ζ = −Re s/|s|</c>, negative where it grows; zero where it cannot be told from zero.</summary>
+    public double DampingRatio { get; }
 
     /// <summary>Frequency <c>|Im s|</c>.</summary>
     [JsonIgnore]
@@ -63,9 +63,9 @@ public sealed class GainInterval
     public RootCount Count { get; }
 
     /// <summary>
-    /// The least damped root inside and where, among the gains sampled and refined; a twentieth of the interval beside each
-    /// onset is left out, since damping vanishes there by itself. <see langword="null"/> where the interval was not
-    /// settled.
+    /// The least damped root inside and where, among the gains sampled and refined; a twentieth of the interval is left out
+    /// beside an end with another verdict, since damping vanishes there by itself. <see langword="null"/> where the
+    /// interval was not settled.
     /// </summary>
     public ClosestApproach? LeastDamped { get; }
 

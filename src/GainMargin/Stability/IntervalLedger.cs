@@ -54,7 +54,7 @@ internal sealed class IntervalLedger
             var upper = i == judged.Count - 1 ? atTo : AtCut(piece.To, piece, judged[i + 1]);
             intervals.Add(new GainInterval(
                 piece.From, piece.To, lower, piece.Inside, upper, piece.Count,
-                piece.Open ? null : LeastDamped(piece.From, piece.To, i > 0, i < judged.Count - 1)));
+                piece.Open ? null : LeastDamped(piece.From, piece.To, lower != piece.Inside, upper != piece.Inside)));
         }
 
         Intervals = intervals.ToImmutable();
@@ -131,11 +131,12 @@ internal sealed class IntervalLedger
         return Math.Min(left.Count.Growing, right.Count.Growing) > 0 ? StabilityVerdict.Unstable : StabilityVerdict.Marginal;
     }
 
-    private ClosestApproach? LeastDamped(double from, double to, bool onsetBelow, bool onsetAbove)
+    /// <summary>Least damping, a little away from an end that has another verdict: damping vanishes there by itself.</summary>
+    private ClosestApproach LeastDamped(double from, double to, bool insetFrom, bool insetTo)
     {
-        double low = from + (onsetBelow ? BesideOnset * (to - from) : 0);
-        double high = to - (onsetAbove ? BesideOnset * (to - from) : 0);
-        var approaches = _samples.Where(s => s.Gain > low && s.Gain < high).Select(s => Worst(s.Gain, s.Values)).ToList();
+        double low = from + (insetFrom ? BesideOnset * (to - from) : 0);
+        double high = to - (insetTo ? BesideOnset * (to - from) : 0);
+        var approaches = _samples.Where(s => s.Gain > low && s.Gain < high).Select(s => Worst(s.Gain, s.Roots)).ToList();
         approaches.Insert(0, At(low));
         approaches.Add(At(high));
         int least = 0;
@@ -173,14 +174,17 @@ internal sealed class IntervalLedger
 
     private ClosestApproach At(double gain) => Worst(gain, _sweep.RootsAt(gain));
 
-    private ClosestApproach Worst(double gain, Complex[] roots)
+    private ClosestApproach Worst(double gain, RootSet roots)
     {
-        if (roots.Length == 0)
+        int worst = -1;
+        double least = double.PositiveInfinity;
+        for (int i = 0; i < roots.Values.Length; i++)
         {
-            return new ClosestApproach(gain, Complex.Zero);
+            var s = roots.Values[i];
+            double ratio = roots.VerdictOf(i) == StabilityVerdict.Undecided ? 0 : -s.Real / Complex.Abs(s);
+            (worst, least) = ratio < least ? (i, ratio) : (worst, least);
         }
 
-        var worst = roots.MaxBy(s => s == Complex.Zero ? 0 : s.Real / Complex.Abs(s));
-        return new ClosestApproach(gain, worst * _sweep.Model.Rate);
+        return new ClosestApproach(gain, worst < 0 ? Complex.Zero : roots.Values[worst] * _sweep.Model.Rate, worst < 0 ? 0 : least);
     }
 }

@@ -38,18 +38,34 @@ internal sealed class OnsetEvidence(SweepModel sweep)
         double[] gains = sweep.GainsAt(gain.Gain);
         var closed = sweep.Model.Even.At(gains);
         var change = sweep.Model.Even.SlopeAt(gains, sweep.SlopesAt(gain.Gain));
-        var (elastic, drifting, free) = Parts(gain.Right);
-        var byRoot = BorderedSystem.Inner(gain.Left, Sum(closed.SlopeTimes(Complex.Zero, elastic), MassOnly(closed).Times(Complex.One, drifting)));
-        var byGain = BorderedSystem.Inner(gain.Left, Sum(
-            Sum(change.Times(Complex.Zero, gain.Right), change.SlopeTimes(Complex.Zero, drifting)), MassOnly(change).Times(Complex.One, free)));
+        var known = sweep.Permanent.OnLeft ? gain.Left : gain.Right;
+        var (elastic, drifting, free) = Parts(known);
+        var byRoot = Form(closed.Damping, elastic) + Form(closed.Mass, drifting);
+        var byGain = Form(change.Stiffness, known) + Form(change.Damping, drifting) + Form(change.Mass, free);
         double rounding = BorderedSystem.Rounding(sweep.Model.Even.ModuliAt(gains), 1, gain.Left, gain.Right);
         double? slope = Complex.Abs(byRoot) <= rounding ? null : -(byGain / byRoot).Real * sweep.Model.Rate;
-        var shape = IsThere(free) ? free : IsThere(drifting) ? drifting : gain.Right;
+        var shape = sweep.Permanent.OnLeft ? gain.Right : IsThere(free) ? free : IsThere(drifting) ? drifting : gain.Right;
         return new OnsetDraft(
             gain.Gain, gain.Uncertainty, OnsetKind.Divergence, default, slope,
             ModeMeasures.BackwardError(closed, Complex.Zero, shape), Mode(shape), Mode(gain.Left), null);
 
         bool IsThere(Complex[] part) => Dense.Norm2(part) > 1e-8 * Dense.Norm2(gain.Right);
+
+        // wᵀAv with one of the two vectors replaced by a part of itself.
+        Complex Form(Matrix<double> a, Complex[] part)
+        {
+            var (w, v) = sweep.Permanent.OnLeft ? (part, gain.Right) : (gain.Left, part);
+            var sum = Complex.Zero;
+            for (int i = 0; i < w.Length; i++)
+            {
+                for (int j = 0; j < v.Length; j++)
+                {
+                    sum += w[i] * a[i, j] * v[j];
+                }
+            }
+
+            return sum;
+        }
     }
 
     public OnsetDraft OfInfinity(SingularGain gain)
@@ -62,21 +78,13 @@ internal sealed class OnsetEvidence(SweepModel sweep)
 
     private static QuadraticPencil MassOnly(QuadraticPencil pencil) => new(pencil.Mass, pencil.Mass * 0, pencil.Mass * 0);
 
-    private static Complex[] Sum(Complex[] a, Complex[] b) => [.. a.Zip(b, (x, y) => x + y)];
-
     /// <summary>Splits a vector into its elastic part and its parts along drifting and free rigid motion.</summary>
     private (Complex[] Elastic, Complex[] Drifting, Complex[] Free) Parts(Complex[] v)
     {
-        var drifting = Along(sweep.Permanent.Drifting);
-        var free = Along(sweep.Permanent.Free);
+        var (ontoDrifting, ontoFree) = sweep.RigidProjections();
+        var drifting = Dense.Times(ontoDrifting, v);
+        var free = Dense.Times(ontoFree, v);
         return ([.. v.Select((x, i) => x - drifting[i] - free[i])], drifting, free);
-
-        Complex[] Along(Matrix<double> hat)
-        {
-            var basis = sweep.Model.HatToEven(hat);
-            var onto = basis * basis.TransposeThisAndMultiply(sweep.Model.Even.Open.Mass);
-            return [.. Enumerable.Range(0, v.Length).Select(i => Enumerable.Range(0, v.Length).Aggregate(Complex.Zero, (sum, j) => sum + (onto[i, j] * v[j])))];
-        }
     }
 
     private NamedVector Mode(Complex[] even) => NamedVector.Scaled(_dofs, sweep.Model.EvenToPhysical(even));

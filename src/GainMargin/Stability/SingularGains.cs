@@ -1,6 +1,6 @@
-using System.Numerics;
 using GainMargin.Numerics;
 using MathNet.Numerics.LinearAlgebra;
+using Complex = System.Numerics.Complex;
 
 namespace GainMargin;
 
@@ -18,66 +18,74 @@ internal sealed class SingularGains
 {
     private static readonly double[] ShiftFractions = [0.5, 0.381966, 0.618034, 0.145898, 0.854102, 0.034, 0.966, 0.0, 1.0];
 
-    private readonly LoopedPencil _static;
     private readonly SweepModel _sweep;
 
-    private SingularGains(LoopedPencil staticPencil, SweepModel sweep)
-    {
-        _static = staticPencil;
-        _sweep = sweep;
-    }
+    private SingularGains(SweepModel sweep) => _sweep = sweep;
 
     /// <summary>Whether the matrix is regular for almost every value; if not, nothing can be said of its singular values.</summary>
     public bool IsRegular { get; private set; } = true;
 
     public IReadOnlyList<SingularGain> Found { get; private set; } = [];
 
+    private LoopedPencil Matrices { get; init; } = null!;
+
     /// <summary>
     /// Values with a zero root beyond those that are always there. Motions without stiffness are given their damping, or
-    /// their mass where they meet no damping either: <c>T = K + D·R₁R₁ᵀM + M·R₂R₂ᵀM</c>.
+    /// their mass where they meet no damping either: <c>T = K + D·P₁ + M·P₂</c> with <c>Pᵢ = RᵢRᵢᵀM</c>, or
+    /// <c>T = K + P₁ᵀD + P₂ᵀM</c> where they are known from their left side.
     /// </summary>
     public static SingularGains Divergences(SweepModel sweep)
     {
         var even = sweep.Model.Even;
-        var mass = even.Open.Mass;
-        var drifting = sweep.Model.HatToEven(sweep.Permanent.Drifting);
-        var free = sweep.Model.HatToEven(sweep.Permanent.Free);
-        var ontoDrifting = drifting * drifting.TransposeThisAndMultiply(mass);
-        var ontoFree = free * free.TransposeThisAndMultiply(mass);
-        return Run(
-            even.Open.Stiffness + (even.Open.Damping * ontoDrifting) + (mass * ontoFree), sweep,
-            (ratio, s) => (ratio.Position * s) + (ratio.Rate * ontoDrifting.TransposeThisAndMultiply(s)) + (ratio.Acceleration * ontoFree.TransposeThisAndMultiply(s)));
+        var (drifting, free) = sweep.RigidProjections();
+        Vector<double> Weighted(FeedbackRatios ratio, Vector<double> pattern)
+            => (ratio.Position * pattern) + (ratio.Rate * drifting.TransposeThisAndMultiply(pattern)) + (ratio.Acceleration * free.TransposeThisAndMultiply(pattern));
+
+        if (!sweep.Permanent.OnLeft)
+        {
+            return Run(even.Open.Stiffness + (even.Open.Damping * drifting) + (even.Open.Mass * free), sweep, (_, b) => b, Weighted, true);
+        }
+
+        var open = even.Open.Stiffness + drifting.TransposeThisAndMultiply(even.Open.Damping) + free.TransposeThisAndMultiply(even.Open.Mass);
+        return even.Residual is null ? Run(open, sweep, Weighted, (_, s) => s, false) : new SingularGains(sweep) { IsRegular = false };
     }
 
     /// <summary>Values at which a root passes through infinity.</summary>
     public static SingularGains ThroughInfinity(SweepModel sweep)
-        => Run(sweep.Model.Even.Open.Mass, sweep, (ratio, s) => ratio.Acceleration * s);
+        => Run(sweep.Model.Even.Open.Mass, sweep, (_, b) => b, (ratio, s) => ratio.Acceleration * s, true);
 
-    private static SingularGains Run(Matrix<double> open, SweepModel sweep, Func<FeedbackRatios, MathNet.Numerics.LinearAlgebra.Vector<double>, MathNet.Numerics.LinearAlgebra.Vector<double>> sensed)
+    private static SingularGains Run(
+        Matrix<double> open, SweepModel sweep,
+        Func<FeedbackRatios, Vector<double>, Vector<double>> driven, Func<FeedbackRatios, Vector<double>, Vector<double>> sensed, bool ratioOnSensor)
     {
         var even = sweep.Model.Even;
         int n = even.Order;
         int r = even.LoopCount;
+        var drive = Dense.Zero(n, r);
         var sense = Dense.Zero(n, r);
         var residual = even.Residual is null ? null : Dense.Copy(even.Residual);
         for (int k = 0; k < r; k++)
         {
+            drive.SetColumn(k, driven(even.Ratios[k], even.Drive.Column(k)));
             sense.SetColumn(k, sensed(even.Ratios[k], even.Sense.Column(k)));
-            residual?.SetRow(k, even.Residual!.Row(k) * even.Ratios[k].Position);
+            if (ratioOnSensor)
+            {
+                residual?.SetRow(k, even.Residual!.Row(k) * even.Ratios[k].Position);
+            }
         }
 
         var zero = Dense.Zero(n, n);
         var unit = new FeedbackRatios[r];
         Array.Fill(unit, new FeedbackRatios { Position = 1 });
-        var gains = new SingularGains(new LoopedPencil(new QuadraticPencil(zero, zero, open), even.Drive, sense, unit, residual), sweep);
+        var gains = new SingularGains(sweep) { Matrices = new LoopedPencil(new QuadraticPencil(zero, zero, open), drive, sense, unit, residual) };
         gains.Search();
         return gains;
     }
 
     private void Search()
     {
-        int[] moving = [.. Enumerable.Range(0, _static.LoopCount).Where(k =>
-            _sweep.Polynomials[k].Length > 1 && (_static.Sense.Column(k).L2Norm() > 0 || _static.Residual?.Row(k).L2Norm() > 0))];
+        int[] moving = [.. Enumerable.Range(0, Matrices.LoopCount).Where(k =>
+            _sweep.Polynomials[k].Length > 1 && (Matrices.Sense.Column(k).L2Norm() * Matrices.Drive.Column(k).L2Norm() > 0 || Matrices.Residual?.Row(k).L2Norm() > 0))];
         if (moving.Length == 0)
         {
             return;
@@ -127,24 +135,24 @@ internal sealed class SingularGains
     /// <summary><c>H</c> at a shift, and the norm of the inverse against the matrix, which says how singular it is.</summary>
     private (Matrix<double>? Flexibility, double Size) FlexibilityAt(double value, int[] moving)
     {
-        int n = _static.Order;
-        int r = _static.LoopCount;
+        int n = Matrices.Order;
+        int r = Matrices.LoopCount;
         double[] gains = _sweep.GainsAt(value);
         var extended = Dense.Zero(n + r, n + r);
         var output = Dense.Zero(moving.Length, n + r);
-        extended.SetSubMatrix(0, 0, _static.Open.Stiffness);
-        extended.SetSubMatrix(0, n, -_static.Drive);
+        extended.SetSubMatrix(0, 0, Matrices.Open.Stiffness);
+        extended.SetSubMatrix(0, n, -Matrices.Drive);
         for (int k = 0; k < r; k++)
         {
             extended[n + k, n + k] = 1;
             for (int j = 0; j < n; j++)
             {
-                extended[n + k, j] = gains[k] * _static.Sense[j, k];
+                extended[n + k, j] = gains[k] * Matrices.Sense[j, k];
             }
 
-            for (int j = 0; j < r && _static.Residual is not null; j++)
+            for (int j = 0; j < r && Matrices.Residual is not null; j++)
             {
-                extended[n + k, n + j] += gains[k] * _static.Residual[k, j];
+                extended[n + k, n + j] += gains[k] * Matrices.Residual[k, j];
             }
         }
 
@@ -154,12 +162,12 @@ internal sealed class SingularGains
             input[n + moving[m], m] = 1;
             for (int j = 0; j < n; j++)
             {
-                output[m, j] = _static.Sense[j, moving[m]];
+                output[m, j] = Matrices.Sense[j, moving[m]];
             }
 
-            for (int j = 0; j < r && _static.Residual is not null; j++)
+            for (int j = 0; j < r && Matrices.Residual is not null; j++)
             {
-                output[m, n + j] = _static.Residual[moving[m], j];
+                output[m, n + j] = Matrices.Residual[moving[m], j];
             }
         }
 
@@ -169,7 +177,7 @@ internal sealed class SingularGains
         }
 
         // Rows of the loops are scaled to the open matrix, so that the measure does not depend on the unit of the gain.
-        double size = solution.SubMatrix(0, n, 0, moving.Length).FrobeniusNorm() * _static.Open.Stiffness.FrobeniusNorm() / (_static.Drive.FrobeniusNorm() + double.Epsilon);
+        double size = solution.SubMatrix(0, n, 0, moving.Length).FrobeniusNorm() * Matrices.Open.Stiffness.FrobeniusNorm() / (Matrices.Drive.FrobeniusNorm() + double.Epsilon);
         return (output * solution, size);
     }
 
@@ -202,24 +210,22 @@ internal sealed class SingularGains
 
     private SingularGain Polish(double start, double own)
     {
-        int n = _static.Order;
         double value = start;
-        Complex[] left = Vector(_static.At(_sweep.GainsAt(value)).Stiffness, true);
-        Complex[] right = Vector(_static.At(_sweep.GainsAt(value)).Stiffness, false);
+        var (right, left) = Dense.SmallestSingularVectors(Matrices.At(_sweep.GainsAt(value)).Stiffness);
         double previous = double.PositiveInfinity;
         for (int step = 0; step < 12; step++)
         {
             double[] gains = _sweep.GainsAt(value);
-            var closed = _static.At(gains);
+            var closed = Matrices.At(gains);
             var system = BorderedSystem.Solve(closed.At(Complex.Zero), left, right);
             if (system is null)
             {
                 break;
             }
 
-            var slope = -BorderedSystem.Inner(system.Left, _static.SlopeAt(gains, _sweep.SlopesAt(value)).Times(Complex.Zero, system.Right));
+            var slope = -BorderedSystem.Inner(system.Left, Matrices.SlopeAt(gains, _sweep.SlopesAt(value)).Times(Complex.Zero, system.Right));
             double change = -(system.Defect / slope).Real;
-            double rounding = BorderedSystem.Rounding(_static.ModuliAt(gains), 0, system.Left, system.Right) / Complex.Abs(slope);
+            double rounding = BorderedSystem.Rounding(Matrices.ModuliAt(gains), 0, system.Left, system.Right) / Complex.Abs(slope);
             if (!double.IsFinite(change) || !double.IsFinite(rounding) || Math.Abs(value + change - start) > Math.Max(100 * own, 1e-3 * Math.Abs(start)))
             {
                 break;
@@ -227,7 +233,7 @@ internal sealed class SingularGains
 
             (left, right) = (system.Left, system.Right);
             value += change;
-            if (Math.Abs(change) <= rounding || Math.Abs(change) >= 0.5 * previous)
+            if (Math.Abs(change) <= rounding || (Math.Abs(change) >= 0.5 * previous && Math.Abs(change) <= Tolerances.Stagnation * rounding))
             {
                 return new SingularGain(value, rounding + Math.Abs(change) + (Tolerances.Epsilon * Math.Abs(value)), right, left);
             }
@@ -237,13 +243,6 @@ internal sealed class SingularGains
 
         // Several null vectors at once: the small eigenproblem stands as it is.
         return new SingularGain(start, own, right, left);
-
-        Complex[] Vector(Matrix<double> a, bool ofTranspose)
-        {
-            var svd = a.Svd();
-            var v = ofTranspose ? svd.U.Column(n - 1) : svd.VT.Row(n - 1);
-            return [.. v.Select(x => new Complex(x, 0))];
-        }
     }
 
     private static List<SingularGain> Merged(List<SingularGain> found)

@@ -60,8 +60,7 @@ internal sealed class SweepModel
         var rigid = Permanent;
         if (ownMotion)
         {
-            var hat = Model.Hat.At(gains);
-            rigid = RigidMotion.Find(hat.Stiffness, hat.Damping);
+            rigid = RigidMotion.Of(Model.Hat.At(gains));
         }
 
         var roots = Counted(value, () => RootSet.Polished(Model, gains, rigid));
@@ -72,7 +71,19 @@ internal sealed class SweepModel
         return (count, verdict, roots);
     }
 
-    public Complex[] RootsAt(double value) => Counted(value, () => RootSet.Raw(Model, GainsAt(value), Permanent)).Values;
+    public RootSet RootsAt(double value) => Counted(value, () => RootSet.Raw(Model, GainsAt(value), Permanent));
+
+    /// <summary>Projections <c>RRᵀM</c> onto drifting and free rigid motion, in evenly scaled coordinates.</summary>
+    public (Matrix<double> Drifting, Matrix<double> Free) RigidProjections()
+    {
+        Matrix<double> Onto(Matrix<double> hat)
+        {
+            var basis = Model.HatToEven(hat);
+            return basis * basis.TransposeThisAndMultiply(Model.Even.Open.Mass);
+        }
+
+        return (Onto(Permanent.Drifting), Onto(Permanent.Free));
+    }
 
     private static double Evaluate(double[] polynomial, double value)
     {
@@ -105,19 +116,24 @@ internal sealed class SweepModel
         bool[] moves = Array.ConvertAll(_polynomials, p => p.Length > 1);
         double[] held = [.. _polynomials.Select((p, k) => moves[k] ? 0 : p[0])];
         var closed = Model.Hat.At(held);
-        return RigidMotion.Find(
-            Stacked(closed.Stiffness, k => moves[k] && Model.Hat.Ratios[k].Position != 0),
-            Stacked(closed.Damping, k => moves[k] && Model.Hat.Ratios[k].Rate != 0));
+        return RigidMotion.Larger(
+            RigidMotion.Find(
+                Stacked(closed.Stiffness, Model.Hat.Sense, k => moves[k] && Model.Hat.Ratios[k].Position != 0),
+                Stacked(closed.Damping, Model.Hat.Sense, k => moves[k] && Model.Hat.Ratios[k].Rate != 0), false),
+            RigidMotion.Find(
+                Stacked(closed.Stiffness.Transpose(), Model.Hat.Drive, k => moves[k] && Model.Hat.Ratios[k].Position != 0),
+                Stacked(closed.Damping.Transpose(), Model.Hat.Drive, k => moves[k] && Model.Hat.Ratios[k].Rate != 0), true));
     }
 
-    private Matrix<double> Stacked(Matrix<double> held, Func<int, bool> counts)
+    /// <summary>The held matrix with the patterns of the moving loops below it, each of the size of the matrix.</summary>
+    private Matrix<double> Stacked(Matrix<double> held, Matrix<double> patterns, Func<int, bool> counts)
     {
         double size = held.FrobeniusNorm();
         size = size > 0 ? size : 1;
         var stacked = held;
         for (int k = 0; k < Model.Hat.LoopCount; k++)
         {
-            var row = Model.Hat.Sense.Column(k);
+            var row = patterns.Column(k);
             double length = row.L2Norm();
             if (counts(k) && length > 0)
             {

@@ -1,0 +1,32 @@
+namespace GainMargin;
+
+/// <summary>
+/// First samples of a piece: never further apart than the widest step, and towards zero gain in octaves, since a loop
+/// moves the roots most where it begins to act.
+/// </summary>
+internal static class SweepGrid
+{
+    /// <summary>Octaves taken towards zero: about 72 dB.</summary>
+    private const int Octaves = 12;
+
+    public static double[] Between(double from, double to, double width, double maximumStep)
+    {
+        double step = maximumStep * width;
+        int count = Math.Max(1, (int)Math.Ceiling((to - from) / step));
+        double reach = Math.Max(Math.Abs(from), Math.Abs(to));
+        var nodes = new SortedSet<double> { from, to };
+        for (int i = 1; i < count; i++)
+        {
+            nodes.Add(from + ((to - from) * i / count));
+        }
+
+        for (int k = 1; k <= Octaves; k++)
+        {
+            double octave = Math.ScaleB(reach, -k);
+            nodes.Add(octave);
+            nodes.Add(-octave);
+        }
+
+        return [.. nodes.Where(g => g >= from && g <= to)];
+    }
+}
