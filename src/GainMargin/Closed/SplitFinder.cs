@@ -95,10 +95,11 @@ internal static class FactFinder
                 "Kelvin–Tait–Chetaev", StabilityVerdict.Unstable, "a negative stiffness with complete damping; gyroscopic terms do not help", Merkin));
         }
 
-        if (conservativeOnly && lossless && conservative.Definiteness == Definiteness.PositiveDefinite)
+        if (conservativeOnly && lossless && conservative.Definiteness is (Definiteness.PositiveDefinite or Definiteness.PositiveSemidefinite or Definiteness.Zero))
         {
+            // For K ≥ 0 and skew D each root solves s²m + i·s·γ + k = 0 with m > 0, k ≥ 0: purely imaginary.
             facts.Add(new DecidingFact(
-                "Lagrange–Dirichlet", StabilityVerdict.Marginal, "positive definite stiffness and no damping at all: the energy is conserved", Merkin));
+                "Lagrange–Dirichlet", StabilityVerdict.Marginal, "no negative stiffness and no damping at all: the energy is conserved", Merkin));
         }
 
         if (IsNegativeDeterminant(hat.Stiffness))

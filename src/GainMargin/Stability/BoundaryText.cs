@@ -57,7 +57,7 @@ internal static class BoundaryText
             _ => "flutter",
         };
         string frequency = onset.Kind == OnsetKind.Flutter ? $" at {units.Show(onset.Frequency)}" : "";
-        string slope = onset.GrowthRateSlope is { } rate ? string.Create(CultureInfo.InvariantCulture, $", growth rate slope {rate:G4} per gain") : "";
+        string slope = onset.GrowthRateSlope is { } rate ? $", growth rate slope {units.ShowRatePerGain(rate, unit)}" : "";
         return string.Create(
             CultureInfo.InvariantCulture,
             $"{onset.Gain:G10}{Suffix(unit)} ± {onset.GainUncertainty:G2}: {kind}{frequency}, {Word(onset.Direction)}, growing roots {onset.Below.Growing} → {onset.Above.Growing}{slope}");
@@ -76,7 +76,7 @@ internal static class BoundaryText
     {
         if (at != inside)
         {
-            text.Append(CultureInfo.InvariantCulture, $"  {gain:G7}{Suffix(unit)}: {Word(at)} at this end itself\n");
+            text.Append(CultureInfo.InvariantCulture, $"  at {gain:G7}{Suffix(unit)}: {Word(at)}\n");
         }
     }
 

@@ -39,7 +39,7 @@ internal sealed class FlutterSearch
 
     public List<SweepStep> Steps { get; } = [];
 
-    public bool BudgetSpent { get; private set; }
+    private bool BudgetSpent { get; set; }
 
     public void Run(double from, double to)
     {
@@ -48,8 +48,15 @@ internal sealed class FlutterSearch
         double[] grid = SweepGrid.Between(from, to, _sweep.Path.Range.Width, _options.MaximumStep);
         for (int i = 1; i < grid.Length; i++)
         {
+            BudgetSpent |= _sweep.Decompositions >= _options.MaximumDecompositions;
+            if (BudgetSpent)
+            {
+                Open.Add(new OpenStretch(left.Gain, to));
+                return;
+            }
+
             bool last = i == grid.Length - 1;
-            var right = last ? _sweep.SampleAt(to) : SampleOffAxis(grid[i], 0.05 * (grid[i] - grid[i - 1]));
+            var right = last ? _sweep.SampleAt(to) : SampleOffAxis(grid[i], SweepGrid.Aside * (grid[i] - grid[i - 1]));
             Resolve(left, right);
             left = right;
             _settled(left.Gain);

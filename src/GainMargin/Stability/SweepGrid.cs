@@ -9,9 +9,12 @@ internal static class SweepGrid
     /// <summary>Octaves taken towards zero: about 72 dB.</summary>
     private const int Octaves = 12;
 
+    /// <summary>Share of a step by which a sample may be moved aside; steps are shorter by as much.</summary>
+    public const double Aside = 0.05;
+
     public static double[] Between(double from, double to, double width, double maximumStep)
     {
-        double step = maximumStep * width;
+        double step = (1 - Aside) * maximumStep * width;
         int count = Math.Max(1, (int)Math.Ceiling((to - from) / step));
         double reach = Math.Max(Math.Abs(from), Math.Abs(to));
         var nodes = new SortedSet<double> { from, to };

@@ -22,8 +22,8 @@ public sealed record SweepOptions
     public double MinimumStep { get => _minimumStep; init => _minimumStep = Guard.InRange(value, 1e-14, 0.1, nameof(MinimumStep)); }
 
     /// <summary>
-    /// Most eigenvalue decompositions, by default 4000, some forty times what a law of 40 degrees of freedom takes; what is
-    /// not settled by then is reported as undecided.
+    /// Most eigenvalue decompositions spent on the search, by default 4000, some forty times what a law of 40 degrees of
+    /// freedom takes; what is not settled by then is reported as undecided. Verdicts take a few more.
     /// </summary>
     public int MaximumDecompositions
     {

@@ -35,9 +35,11 @@ public sealed record UnitLabels
             : $"{radians} rad/{time}";
     }
 
-    internal string ShowRate(double rate)
+    /// <summary>A rate per unit of gain, such as <c>0.1 1/s per N/m</c>.</summary>
+    internal string ShowRatePerGain(double rate, string? gainUnit)
     {
         string time = string.IsNullOrWhiteSpace(Time) ? "unit time" : Time;
-        return $"{rate.ToString("G6", CultureInfo.InvariantCulture)} 1/{time}";
+        string gain = string.IsNullOrWhiteSpace(gainUnit) ? "unit gain" : gainUnit;
+        return $"{rate.ToString("G4", CultureInfo.InvariantCulture)} 1/{time} per {gain}";
     }
 }
