@@ -15,7 +15,7 @@ internal sealed record BorderedSystem(Complex Defect, Complex[] Right, Complex[]
     public static BorderedSystem? Solve(Matrix<Complex> q, Complex[] left, Complex[] right)
     {
         int n = q.RowCount;
-        double size = q.FrobeniusNorm();
+        double size = Dense.Norm(q);
         size = size > 0 && double.IsFinite(size) ? size : 1;
         var direct = DenseMatrix.Create(n + 1, n + 1, (i, j) => Entry(q, size, left, right, i, j));
         var end = new Complex[n + 1];

@@ -15,7 +15,8 @@ public static class ClosedLoopAnalysis
     public static SymmetrySplit Split(ClosedLoop closed) => SplitFinder.Run(Guard.NotNull(closed));
 
     /// <summary>
-    /// The plain first-order state matrix, <c>2n×2n</c>: <c>x = [q; q′]</c>, <c>A = [0 I; −M⁻¹K −M⁻¹D]</c>, in the units
+    /// The plain first-order state matrix, <c>2n×2n</c>: <c>x = [q; q′]</c> (the rates are
+    /// named with a prime), <c>A = [0 I; −M⁻¹K −M⁻¹D]</c>, in the units
     /// of the model. It is for showing; roots are computed in normalised coordinates, see <see cref="Spectrum"/>.
     /// </summary>
     /// <param name="closed">The closed loop.</param>
@@ -32,7 +33,14 @@ public static class ClosedLoopAnalysis
             throw new NumericalFailureException("state matrix", "The closed-loop mass matrix is singular: there is no state matrix.");
         }
 
-        var names = DofNames.Of([.. closed.Structure.Dofs, .. closed.Structure.Dofs.Select(d => d + "′")]);
+        var dofs = closed.Structure.Dofs;
+        string prime = "′";
+        while (dofs.Any(d => dofs.TryGetIndex(d + prime, out _)))
+        {
+            prime += "′";
+        }
+
+        var names = DofNames.Of([.. dofs, .. dofs.Select(d => d + prime)]);
         return new NamedMatrix(names, names, DenseMatrix.Create(2 * n, 2 * n, (i, j) => (i < n, j < n) switch
         {
             (true, true) => 0,

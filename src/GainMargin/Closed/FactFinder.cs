@@ -22,7 +22,7 @@ internal static class FactFinder
 
         bool conservativeOnly = IsSymmetric(physical.Stiffness);
         bool damped = dissipative.Definiteness == Definiteness.PositiveDefinite;
-        bool lossless = Dense.SymmetricPart(physical.Damping).FrobeniusNorm() == 0;
+        bool lossless = Dense.Norm(Dense.SymmetricPart(physical.Damping)) == 0;
         if (conservativeOnly && damped && conservative.Definiteness == Definiteness.PositiveDefinite)
         {
             facts.Add(new DecidingFact(
@@ -56,7 +56,7 @@ internal static class FactFinder
                 "sum of the roots of the characteristic polynomial; common practice, no source"));
         }
 
-        if (!conservativeOnly && physical.Damping.FrobeniusNorm() == 0 && IsMultipleOfIdentity(Dense.SymmetricPart(hat.Stiffness)))
+        if (!conservativeOnly && Dense.Norm(physical.Damping) == 0 && IsMultipleOfIdentity(Dense.SymmetricPart(hat.Stiffness)))
         {
             facts.Add(new DecidingFact(
                 "Merkin", StabilityVerdict.Unstable, "equal frequencies, no damping, and circulatory stiffness however small", Merkin));
@@ -65,7 +65,7 @@ internal static class FactFinder
         return facts.ToImmutable();
     }
 
-    private static bool IsSymmetric(Matrix<double> a) => Dense.SkewPart(a).FrobeniusNorm() == 0;
+    private static bool IsSymmetric(Matrix<double> a) => Dense.Norm(Dense.SkewPart(a)) == 0;
 
     private static bool IsNegativeDeterminant(Matrix<double> stiffness)
     {
@@ -88,13 +88,13 @@ internal static class FactFinder
     private static bool IsNegativeTrace(QuadraticPencil hat)
     {
         var d = Dense.TrySolve(hat.Mass, hat.Damping);
-        return d is not null && d.Trace() < -Tolerances.Backward(hat.Order, d.FrobeniusNorm());
+        return d is not null && d.Trace() < -Tolerances.Backward(hat.Order, Dense.Norm(d));
     }
 
     private static bool IsMultipleOfIdentity(Matrix<double> a)
     {
         int n = a.RowCount;
         double mean = a.Trace() / n;
-        return (a - (Dense.Identity(n) * mean)).FrobeniusNorm() <= Tolerances.Backward(n, a.FrobeniusNorm());
+        return Dense.Norm(a - (Dense.Identity(n) * mean)) <= Tolerances.Backward(n, Dense.Norm(a));
     }
 }

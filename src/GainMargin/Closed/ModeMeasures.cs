@@ -9,7 +9,7 @@ internal static class ModeMeasures
     public static double BackwardError(QuadraticPencil pencil, Complex s, Complex[] v)
     {
         double size = Complex.Abs(s);
-        double scale = ((size * size * pencil.Mass.FrobeniusNorm()) + (size * pencil.Damping.FrobeniusNorm()) + pencil.Stiffness.FrobeniusNorm()) * Dense.Norm2(v);
+        double scale = ((size * size * Dense.Norm(pencil.Mass)) + (size * Dense.Norm(pencil.Damping)) + Dense.Norm(pencil.Stiffness)) * Dense.Norm2(v);
         return scale == 0 ? 0 : Dense.Norm2(pencil.Times(s, v)) / scale;
     }
 }

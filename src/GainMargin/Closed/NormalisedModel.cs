@@ -25,10 +25,15 @@ internal sealed class NormalisedModel
         _factor = Dense.TryCholesky(Congruence(mass, _scale))
             ?? throw new NumericalFailureException("mass normalisation", "The Cholesky factorisation of the mass matrix broke down.");
         var plain = pencil.Transformed(Normalised, b => Dense.LowerSolve(_factor, Scaled(b, _scale)), 1);
-        double stiffness = Math.Sqrt(plain.Open.Stiffness.FrobeniusNorm());
-        double damping = plain.Open.Damping.FrobeniusNorm();
+        double stiffness = Math.Sqrt(Dense.Norm(plain.Open.Stiffness));
+        double damping = Dense.Norm(plain.Open.Damping);
         Rate = PowerOfTwo(stiffness > 0 ? stiffness : damping > 0 ? damping : 1);
         Hat = plain.Transformed(m => m, b => b, Rate);
+        if (!Hat.Open.IsFinite)
+        {
+            throw new NumericalFailureException("mass normalisation", "Stiffness or damping over mass leaves the range of a double: choose other units.");
+        }
+
         Even = pencil.Transformed(m => Congruence(m, _evenScale), b => Scaled(b, _evenScale), Rate);
     }
 

@@ -34,13 +34,13 @@ internal sealed record RigidMotion(Matrix<double> Elastic, Matrix<double> Drifti
     public static RigidMotion Find(Matrix<double> stiffness, Matrix<double> damping, bool onLeft)
     {
         int n = stiffness.ColumnCount;
-        var (rigid, elastic) = Dense.NullSpace(stiffness, Tolerances.NullSpace(n, stiffness.FrobeniusNorm()));
+        var (rigid, elastic) = Dense.NullSpace(stiffness, Tolerances.NullSpace(n, Dense.Norm(stiffness)));
         if (rigid.ColumnCount == 0)
         {
             return new RigidMotion(elastic, rigid, rigid, onLeft);
         }
 
-        var (free, drifting) = Dense.NullSpace(damping * rigid, Tolerances.NullSpace(n, damping.FrobeniusNorm()));
+        var (free, drifting) = Dense.NullSpace(damping * rigid, Tolerances.NullSpace(n, Dense.Norm(damping)));
         return new RigidMotion(elastic, rigid * drifting, rigid * free, onLeft);
     }
 }

@@ -45,7 +45,7 @@ internal static class SpectrumFinder
         ImmutableArray<SpectrumRoot>.Builder all, ClosedLoop closed, NormalisedModel model, QuadraticPencil hat, RigidMotion rigid)
     {
         int n = hat.Order;
-        double tolerance = Tolerances.NullSpace(n, hat.Stiffness.FrobeniusNorm());
+        double tolerance = Tolerances.NullSpace(n, Dense.Norm(hat.Stiffness));
         var basis = rigid.Free.Append(rigid.Drifting);
         if (basis.ColumnCount == 0)
         {

@@ -38,28 +38,28 @@ internal static class SplitFinder
     private static SymmetricPart Symmetric(ClosedLoop closed, NormalisedModel model, NamedMatrix physical, Matrix<double> hat, double unit)
     {
         int n = hat.RowCount;
-        double whole = hat.FrobeniusNorm();
+        double whole = Dense.Norm(hat);
         var part = Dense.SymmetricPart(hat);
         var (values, vectors) = Dense.SymmetricEigen(part);
         double rounding = Tolerances.Backward(n, whole);
         var direction = model.EvenToPhysical(model.HatToEven([.. vectors.Column(0).Select(v => new Complex(v, 0))]));
         var definiteness = Classify(values, rounding);
         return new SymmetricPart(
-            Named(physical, Dense.SymmetricPart(physical.Values)), unit * part.FrobeniusNorm(), Share(part, whole),
+            Named(physical, Dense.SymmetricPart(physical.Values)), unit * Dense.Norm(part), Share(part, whole),
             definiteness == Definiteness.Zero, definiteness, unit * values[0], unit * rounding,
             NamedVector.Scaled(closed.Structure.Dofs, direction));
     }
 
     private static SplitPart Skew(NamedMatrix physical, Matrix<double> hat, double unit)
     {
-        double whole = hat.FrobeniusNorm();
+        double whole = Dense.Norm(hat);
         var exact = Dense.SkewPart(physical.Values);
         var part = Dense.SkewPart(hat);
-        bool negligible = exact.FrobeniusNorm() == 0 || part.FrobeniusNorm() <= Tolerances.Backward(hat.RowCount, whole);
-        return new SplitPart(Named(physical, exact), negligible ? 0 : unit * part.FrobeniusNorm(), negligible ? 0 : Share(part, whole), negligible);
+        bool negligible = Dense.Norm(exact) == 0 || Dense.Norm(part) <= Tolerances.Backward(hat.RowCount, whole);
+        return new SplitPart(Named(physical, exact), negligible ? 0 : unit * Dense.Norm(part), negligible ? 0 : Share(part, whole), negligible);
     }
 
-    private static double Share(Matrix<double> part, double whole) => whole == 0 ? 0 : part.FrobeniusNorm() / whole;
+    private static double Share(Matrix<double> part, double whole) => whole == 0 ? 0 : Dense.Norm(part) / whole;
 
     private static NamedMatrix Named(NamedMatrix like, Matrix<double> values) => new(like.Rows, like.Columns, values);
 }

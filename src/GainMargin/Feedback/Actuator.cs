@@ -1,4 +1,5 @@
 using System.Collections.Immutable;
+using GainMargin.Numerics;
 
 namespace GainMargin;
 
@@ -13,13 +14,13 @@ public sealed class Actuator
     /// <summary>Pushes one point against the ground.</summary>
     /// <param name="dof">Name of the point.</param>
     /// <exception cref="ArgumentException">The name is blank.</exception>
-    public static Actuator At(string dof) => Weighted(new PatternWeight(dof, 1));
+    public static Actuator At(string dof) => Weighted(new PatternWeight(Guard.Name(dof), 1));
 
     /// <summary>Pushes one point and pulls another by the same force.</summary>
     /// <param name="dof">Name of the point pushed.</param>
     /// <param name="reaction">Name of the point that takes the reaction.</param>
     /// <exception cref="ArgumentException">A name is blank, or both are the same.</exception>
-    public static Actuator Between(string dof, string reaction) => new(WeightedPattern.Difference("actuator", dof, reaction));
+    public static Actuator Between(string dof, string reaction) => new(WeightedPattern.Difference("actuator", Guard.Name(dof), Guard.Name(reaction), nameof(reaction)));
 
     /// <summary>Pushes a weighted pattern.</summary>
     /// <param name="weights">The points and their weights.</param>

@@ -31,8 +31,8 @@ public sealed class ControlLaw
     /// <exception cref="ArgumentException">Both are the same loop, or a gain is not finite.</exception>
     public static ControlLaw Cascade(LoopSetting inner, LoopSetting outer)
     {
-        inner.Check();
-        outer.Check();
+        inner.Check(nameof(inner));
+        outer.Check(nameof(outer));
         return inner.Loop.Name == outer.Loop.Name
             ? throw new ArgumentException($"Loop \"{inner.Loop.Name}\" cannot be in cascade with itself.", nameof(outer))
             : Checked([inner, outer], ImmutableDictionary<string, string>.Empty.Add(outer.Loop.Name, inner.Loop.Name));
@@ -50,7 +50,9 @@ public sealed class ControlLaw
     public ControlLaw WithGain(string loop, double gain)
     {
         int i = IndexOf(loop);
-        return new ControlLaw(Loops.SetItem(i, Loops[i] with { Gain = Guard.Finite(gain) }), _innerOf);
+        return double.IsFinite(gain)
+            ? new ControlLaw(Loops.SetItem(i, Loops[i] with { Gain = gain }), _innerOf)
+            : throw new ArgumentOutOfRangeException(nameof(gain), gain, $"The gain of loop \"{loop}\" is {Guard.Show(gain)}; it must be finite.");
     }
 
     /// <summary>The gain of one loop, as typed into the drive.</summary>
@@ -95,7 +97,7 @@ public sealed class ControlLaw
         var names = new HashSet<string>(StringComparer.Ordinal);
         foreach (var setting in loops)
         {
-            setting.Check();
+            setting.Check(nameof(loops));
             if (!names.Add(setting.Loop.Name))
             {
                 throw new ArgumentException($"The loop name \"{setting.Loop.Name}\" occurs twice.", nameof(loops));

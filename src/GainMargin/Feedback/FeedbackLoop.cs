@@ -61,9 +61,17 @@ public sealed class FeedbackLoop
         Guard.Name(name);
         Guard.NotNull(sensor);
         Guard.NotNull(actuator);
-        Guard.Finite(ratios.Position);
-        Guard.Finite(ratios.Rate);
-        Guard.Finite(ratios.Acceleration);
+        foreach (var (what, ratio) in new[]
+        {
+            (nameof(ratios.Position), ratios.Position), (nameof(ratios.Rate), ratios.Rate), (nameof(ratios.Acceleration), ratios.Acceleration),
+        })
+        {
+            if (!double.IsFinite(ratio))
+            {
+                throw new ArgumentOutOfRangeException(nameof(ratios), ratio, $"Loop \"{name}\": {what} is {Guard.Show(ratio)}; it must be finite.");
+            }
+        }
+
         return ratios == default
             ? throw new ArgumentException($"Loop \"{name}\" has no ratio that is not zero: it would feed nothing back.", nameof(ratios))
             : new FeedbackLoop(name, sensor, actuator, ratios);

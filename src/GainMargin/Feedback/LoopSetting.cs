@@ -18,18 +18,18 @@ public readonly record struct LoopSetting(FeedbackLoop Loop, double Gain, string
         return $"{Loop?.Name} = {gain}{unit}";
     }
 
-    internal void Check()
+    internal void Check(string parameter)
     {
-        Guard.NotNull(Loop);
+        Guard.NotNull(Loop, parameter);
         if (!double.IsFinite(Gain))
         {
-            throw new ArgumentException($"The gain of loop \"{Loop.Name}\" is {Guard.Show(Gain)}; it must be finite.", nameof(Gain));
+            throw new ArgumentException($"The gain of loop \"{Loop.Name}\" is {Guard.Show(Gain)}; it must be finite.", parameter);
         }
 
         if (!double.IsFinite(DisplayScale) || DisplayScale == 0)
         {
             throw new ArgumentException(
-                $"The display scale of loop \"{Loop.Name}\" is {Guard.Show(DisplayScale)}; it must be finite and not zero.", nameof(DisplayScale));
+                $"The display scale of loop \"{Loop.Name}\" is {Guard.Show(DisplayScale)}; it must be finite and not zero.", parameter);
         }
     }
 }

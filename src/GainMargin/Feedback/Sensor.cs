@@ -1,4 +1,5 @@
 using System.Collections.Immutable;
+using GainMargin.Numerics;
 
 namespace GainMargin;
 
@@ -13,13 +14,13 @@ public sealed class Sensor
     /// <summary>Sees one point.</summary>
     /// <param name="dof">Name of the point.</param>
     /// <exception cref="ArgumentException">The name is blank.</exception>
-    public static Sensor At(string dof) => Weighted(new PatternWeight(dof, 1));
+    public static Sensor At(string dof) => Weighted(new PatternWeight(Guard.Name(dof), 1));
 
     /// <summary>Sees the motion of one point relative to another.</summary>
     /// <param name="dof">Name of the point.</param>
     /// <param name="reference">Name of the point it is measured from.</param>
     /// <exception cref="ArgumentException">A name is blank, or both are the same.</exception>
-    public static Sensor Difference(string dof, string reference) => new(WeightedPattern.Difference("sensor", dof, reference));
+    public static Sensor Difference(string dof, string reference) => new(WeightedPattern.Difference("sensor", Guard.Name(dof), Guard.Name(reference), nameof(reference)));
 
     /// <summary>Sees a weighted sum.</summary>
     /// <param name="weights">The points and their weights.</param>

@@ -31,10 +31,10 @@ internal static class WeightedPattern
             : throw new ArgumentException($"The {what} has no weight that is not zero.", nameof(weights));
     }
 
-    public static ImmutableArray<PatternWeight> Difference(string what, string plus, string minus)
-        => Guard.Name(plus) != Guard.Name(minus)
+    public static ImmutableArray<PatternWeight> Difference(string what, string plus, string minus, string parameter)
+        => plus != minus
             ? [new(plus, 1), new(minus, -1)]
-            : throw new ArgumentException($"The {what} takes \"{plus}\" against itself, which is zero.", nameof(minus));
+            : throw new ArgumentException($"The {what} takes \"{plus}\" against itself, which is zero.", parameter);
 
     /// <summary>Whether <paramref name="a"/> is a positive multiple of <paramref name="b"/>.</summary>
     public static bool ArePositiveMultiples(ImmutableArray<PatternWeight> a, ImmutableArray<PatternWeight> b)

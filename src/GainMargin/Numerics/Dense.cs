@@ -62,15 +62,15 @@ internal static class Dense
         => DenseMatrix.Create(diagonal.Count, diagonal.Count, (i, j) => i == j ? diagonal[i] : 0);
 
     /// <summary>Symmetric part, <c>(A + Aᵀ)/2</c>.</summary>
-    public static Matrix<double> SymmetricPart(Matrix<double> a) => DenseMatrix.Create(a.RowCount, a.RowCount, (i, j) => 0.5 * (a[i, j] + a[j, i]));
+    public static Matrix<double> SymmetricPart(Matrix<double> a) => DenseMatrix.Create(a.RowCount, a.RowCount, (i, j) => (0.5 * a[i, j]) + (0.5 * a[j, i]));
 
     /// <summary>Skew part, <c>(A − Aᵀ)/2</c>; exactly zero for a matrix that is symmetric bit for bit.</summary>
-    public static Matrix<double> SkewPart(Matrix<double> a) => DenseMatrix.Create(a.RowCount, a.RowCount, (i, j) => 0.5 * (a[i, j] - a[j, i]));
+    public static Matrix<double> SkewPart(Matrix<double> a) => DenseMatrix.Create(a.RowCount, a.RowCount, (i, j) => (0.5 * a[i, j]) - (0.5 * a[j, i]));
 
     /// <summary>Ascending eigenvalues and orthonormal eigenvectors of a symmetric matrix.</summary>
     public static (double[] Values, Matrix<double> Vectors) SymmetricEigen(Matrix<double> a)
     {
-        if (a.FrobeniusNorm() == 0)
+        if (Norm(a) == 0)
         {
             return (new double[a.RowCount], Identity(a.RowCount));
         }
@@ -88,7 +88,7 @@ internal static class Dense
     public static (Matrix<double> Null, Matrix<double> Complement) NullSpace(Matrix<double> a, double tolerance)
     {
         int n = a.ColumnCount;
-        if (a.FrobeniusNorm() <= tolerance)
+        if (Norm(a) <= tolerance)
         {
             return (Identity(n), Zero(n, 0));
         }
@@ -190,6 +190,22 @@ internal static class Dense
 
         return x;
     }
+
+    /// <summary>Frobenius norm, without overflow or underflow on the way.</summary>
+    public static double Norm(Matrix<double> a)
+    {
+        double[] values = Columnwise(a);
+        double largest = 0;
+        foreach (double x in values)
+        {
+            largest = double.IsNaN(x) ? double.NaN : Math.Max(largest, Math.Abs(x));
+        }
+
+        return largest == 0 || !double.IsFinite(largest) ? largest : largest * Math.Sqrt(values.Sum(x => x / largest * (x / largest)));
+    }
+
+    /// <summary>Frobenius norm, without overflow or underflow on the way.</summary>
+    public static double Norm(Matrix<Complex> a) => Norm2(a.AsColumnMajorArray() ?? a.ToColumnMajorArray());
 
     public static double Norm2(ReadOnlySpan<Complex> v)
     {

@@ -38,14 +38,18 @@ internal static class Guard
             ? value
             : throw new ArgumentOutOfRangeException(parameter, value, Invariant($"{parameter} is {value}; it must be at least {least}."));
 
-    /// <summary>Checks size and entries of a matrix given by the caller.</summary>
-    public static void Matrix(Matrix<double> matrix, IReadOnlyList<string> rows, IReadOnlyList<string> columns, string parameter)
+    /// <summary>Checks size and entries of a matrix given by the caller; <paramref name="what"/> is its name in the message.</summary>
+    public static void Matrix(Matrix<double> matrix, IReadOnlyList<string> rows, IReadOnlyList<string> columns, string what, string parameter)
     {
-        ArgumentNullException.ThrowIfNull(matrix, parameter);
+        if (matrix is null)
+        {
+            throw new ArgumentNullException(parameter, $"{what} is null.");
+        }
+
         if (matrix.RowCount != rows.Count || matrix.ColumnCount != columns.Count)
         {
             throw new ArgumentException(
-                Invariant($"{parameter} is {matrix.RowCount}×{matrix.ColumnCount}; {rows.Count}×{columns.Count} was expected."), parameter);
+                Invariant($"{what} is {matrix.RowCount}×{matrix.ColumnCount}; {rows.Count}×{columns.Count} was expected."), parameter);
         }
 
         for (int i = 0; i < rows.Count; i++)
@@ -54,11 +58,13 @@ internal static class Guard
             {
                 if (!double.IsFinite(matrix[i, j]))
                 {
-                    throw new ArgumentException($"{Entry(parameter, rows[i], columns[j])} is {Show(matrix[i, j])}; it must be finite.", parameter);
+                    throw new ArgumentException($"{Entry(what, rows[i], columns[j])} is {Show(matrix[i, j])}; it must be finite.", parameter);
                 }
             }
         }
     }
+
+    public static string Count(int number, string one, string many) => Invariant($"{number} {(number == 1 ? one : many)}");
 
     public static string Entry(string matrix, string row, string column) => $"{matrix}[\"{row}\", \"{column}\"]";
 

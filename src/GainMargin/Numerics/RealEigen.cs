@@ -19,7 +19,7 @@ internal static class RealEigen
     public static EigenSystem Solve(Matrix<double> a)
     {
         int n = a.RowCount;
-        double norm = a.FrobeniusNorm();
+        double norm = Dense.Norm(a);
         if (!double.IsFinite(norm))
         {
             throw new NumericalFailureException("eigenvalues", "The matrix has entries that are not finite, or overflows.");
@@ -31,7 +31,7 @@ internal static class RealEigen
         }
 
         var (balanced, scale) = Balancing.Balance(a);
-        double balancedNorm = balanced.FrobeniusNorm();
+        double balancedNorm = Dense.Norm(balanced);
         double backward = Tolerances.Backward(n, balancedNorm);
         EigenSystem? last = null;
         Exception? cause = null;

@@ -38,7 +38,8 @@ internal static class BoundaryText
 
     public static string Of(GainInterval interval, UnitLabels units, string? unit)
     {
-        string line = string.Create(CultureInfo.InvariantCulture, $"{interval.From:G7} … {interval.To:G7}{Suffix(unit)}: {Word(interval.Inside)}");
+        var (from, to) = Ends(interval.From, interval.To);
+        string line = $"{from} … {to}{Suffix(unit)}: {Word(interval.Inside)}";
         if (interval.LeastDamped is { } least)
         {
             line += string.Create(
@@ -60,7 +61,7 @@ internal static class BoundaryText
         string slope = onset.GrowthRateSlope is { } rate ? $", growth rate slope {units.ShowRatePerGain(rate, unit)}" : "";
         return string.Create(
             CultureInfo.InvariantCulture,
-            $"{onset.Gain:G10}{Suffix(unit)} ± {onset.GainUncertainty:G2}: {kind}{frequency}, {Word(onset.Direction)}, growing roots {onset.Below.Growing} → {onset.Above.Growing}{slope}");
+            $"{(Math.Abs(onset.Gain) <= onset.GainUncertainty ? 0 : onset.Gain):G10}{Suffix(unit)} ± {onset.GainUncertainty:G2}: {kind}{frequency}, {Word(onset.Direction)}, growing roots {onset.Below.Growing} → {onset.Above.Growing}{slope}");
     }
 
     public static string Word(StabilityVerdict verdict) => verdict.ToString().ToLowerInvariant();
@@ -71,6 +72,14 @@ internal static class BoundaryText
         CrossingDirection.Restabilising => "restabilising",
         _ => "touching",
     };
+
+    /// <summary>The two ends in seven digits, or in all where seven do not tell them apart.</summary>
+    private static (string From, string To) Ends(double from, double to)
+    {
+        string low = from.ToString("G7", CultureInfo.InvariantCulture);
+        string high = to.ToString("G7", CultureInfo.InvariantCulture);
+        return low != high ? (low, high) : (from.ToString("R", CultureInfo.InvariantCulture), to.ToString("R", CultureInfo.InvariantCulture));
+    }
 
     private static void AppendEnd(StringBuilder text, double gain, string? unit, StabilityVerdict at, StabilityVerdict inside)
     {

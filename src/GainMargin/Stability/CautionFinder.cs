@@ -9,7 +9,7 @@ internal static class CautionFinder
     private const string Screening =
         "a linear screening, not a clearance: raise gains on the rig in stages, with limits and an emergency stop; local codes and licensed practice decide.";
 
-    public static ImmutableArray<Caution> Run(SweepModel sweep, IntervalLedger ledger, List<OpenStretch> stretches, bool singularSetsAreComplete)
+    public static ImmutableArray<Caution> Run(SweepModel sweep, IntervalLedger ledger, List<GainStretch> stretches, bool singularSetsAreComplete)
     {
         var path = sweep.Path;
         var cautions = ImmutableArray.CreateBuilder<Caution>();

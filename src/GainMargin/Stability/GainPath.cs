@@ -37,7 +37,7 @@ public abstract class GainPath
     public static GainPath OneLoop(ClosedLoop nominal, string loop, GainRange range)
     {
         Guard.NotNull(nominal);
-        range.Check();
+        range.Check(nameof(range));
         nominal.Law.IndexOf(loop);
         return new OneLoopPath(nominal, loop, range);
     }
@@ -50,7 +50,7 @@ public abstract class GainPath
     public static GainPath CommonFactor(ClosedLoop nominal, GainRange factor, params ReadOnlySpan<string> loops)
     {
         Guard.NotNull(nominal);
-        factor.Check();
+        factor.Check(nameof(factor));
         var names = loops.IsEmpty ? nominal.Law.Loops.Select(l => l.Loop.Name).ToImmutableArray() : [.. loops];
         for (int i = 0; i < names.Length; i++)
         {

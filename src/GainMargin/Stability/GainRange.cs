@@ -5,6 +5,9 @@ namespace GainMargin;
 /// <summary>A range of gains to screen, in the unit of the path.</summary>
 public readonly record struct GainRange
 {
+    private const double SmallestWidth = 1e-280;
+    private const double GreatestWidth = 1e280;
+
     private GainRange(double from, double to)
     {
         From = from;
@@ -23,14 +26,19 @@ public readonly record struct GainRange
     /// <summary>Makes a range.</summary>
     /// <param name="from">Lower end.</param>
     /// <param name="to">Upper end, above the lower one.</param>
-    /// <exception cref="ArgumentException">An end is not finite, or the range is empty, reversed or too wide for a double.</exception>
+    /// <exception cref="ArgumentException">
+    /// An end is not finite; the range is empty, reversed, narrower than 1e-12 of its larger end, or too wide for a double.
+    /// </exception>
     public static GainRange Between(double from, double to)
     {
         Guard.Finite(from);
         Guard.Finite(to);
-        return to > from && double.IsFinite(to - from)
+        double width = to - from;
+        double narrowest = Math.Max(SmallestWidth, 1e-12 * Math.Max(Math.Abs(from), Math.Abs(to)));
+        return width >= narrowest && width <= GreatestWidth
             ? new GainRange(from, to)
-            : throw new ArgumentException(Guard.Invariant($"The gain range from {from:R} to {to:R} is empty, reversed or too wide."), nameof(to));
+            : throw new ArgumentException(
+                Guard.Invariant($"The gain range from {from:R} to {to:R} is empty, reversed, too narrow to sample, or too wide for a double."), nameof(to));
     }
 
     /// <summary>The two ends.</summary>
@@ -38,11 +46,11 @@ public readonly record struct GainRange
 
     internal bool Contains(double gain) => gain >= From && gain <= To;
 
-    internal void Check()
+    internal void Check(string parameter)
     {
         if (From == To)
         {
-            throw new ArgumentException("The gain range is empty; make one with GainRange.Between.", nameof(GainRange));
+            throw new ArgumentException("The gain range is empty; make one with GainRange.Between.", parameter);
         }
     }
 }

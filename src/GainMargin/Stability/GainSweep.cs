@@ -14,6 +14,7 @@ public static class GainSweep
     /// <param name="progress">Receives the progress, on the calling thread.</param>
     /// <param name="cancellation">Cancels between two decompositions.</param>
     /// <returns>Onsets, intervals, loci, coverage and cautions. "No onset in this range" is a result.</returns>
+    /// <exception cref="ArgumentException">The narrowest step of the options is wider than the widest.</exception>
     /// <exception cref="NumericalFailureException">An eigenvalue iteration failed; the exception carries the gain.</exception>
     /// <exception cref="OperationCanceledException">Cancelled.</exception>
     /// <remarks>
@@ -23,5 +24,12 @@ public static class GainSweep
     /// </remarks>
     public static StabilityBoundary Run(
         GainPath path, SweepOptions? options = null, IProgress<FinderProgress>? progress = null, CancellationToken cancellation = default)
-        => new SweepRun(Guard.NotNull(path), options ?? new SweepOptions(), progress, cancellation).Run();
+    {
+        Guard.NotNull(path);
+        options ??= new SweepOptions();
+        return options.MinimumStep <= options.MaximumStep
+            ? new SweepRun(path, options, progress, cancellation).Run()
+            : throw new ArgumentException(
+                Guard.Invariant($"The narrowest step {options.MinimumStep:R} is wider than the widest, {options.MaximumStep:R}."), nameof(options));
+    }
 }

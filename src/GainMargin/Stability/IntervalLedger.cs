@@ -3,7 +3,7 @@ using System.Numerics;
 
 namespace GainMargin;
 
-/// <summary>Lays onsets and open stretches along the range and judges each interval between them on its own.</summary>
+/// <summary>Lays onsets and stretches along the range and judges each interval between them on its own.</summary>
 internal sealed class IntervalLedger
 {
     private const double BesideOnset = 0.05;
@@ -12,15 +12,30 @@ internal sealed class IntervalLedger
     private readonly SweepModel _sweep;
     private readonly ImmutableArray<SweepSample> _samples;
     private readonly List<OnsetDraft> _drafts;
-    private readonly List<OpenStretch> _stretches;
+    private readonly List<GainStretch> _open;
+    private readonly List<GainStretch> _onAxis;
 
-    public IntervalLedger(SweepModel sweep, ImmutableArray<SweepSample> samples, List<OnsetDraft> drafts, List<OpenStretch> stretches)
+    public IntervalLedger(
+        SweepModel sweep, ImmutableArray<SweepSample> samples, List<OnsetDraft> drafts, List<GainStretch> open, List<GainStretch> onAxis)
     {
         _sweep = sweep;
         _samples = samples;
         _drafts = drafts;
-        _stretches = stretches;
+        _open = open;
+        _onAxis = onAxis;
     }
+
+    private enum CutKind
+    {
+        /// <summary>An end of the range, or of a stretch along which a pair lies on the axis.</summary>
+        Edge,
+        Onset,
+        Open,
+    }
+
+    private sealed record Cut(double From, double To, CutKind Kind);
+
+    private sealed record Piece(double From, double To, RootCount Count, StabilityVerdict Inside, bool IsOpen);
 
     public ImmutableArray<StabilityOnset> Onsets { get; private set; } = [];
 
@@ -29,62 +44,95 @@ internal sealed class IntervalLedger
     public void Run()
     {
         var range = _sweep.Path.Range;
-        var cuts = Cuts();
-        var judged = new List<(double From, double To, RootCount Count, StabilityVerdict Inside, bool Open)>();
-        for (int i = 0; i + 1 < cuts.Count; i++)
+        var pieces = Pieces();
+        Onsets = [.. _drafts.Select(d => Counted(d, pieces))];
+        var atFrom = _sweep.JudgeAt(range.From);
+        var atTo = _sweep.JudgeAt(range.To);
+        var intervals = ImmutableArray.CreateBuilder<GainInterval>(pieces.Count);
+        for (int i = 0; i < pieces.Count; i++)
         {
-            double from = cuts[i].To;
-            double to = cuts[i + 1].From;
-            var (count, verdict, _) = _sweep.JudgeAt(0.5 * (from + to), ownMotion: false);
-            judged.Add((from, to, count, verdict, false));
-            if (cuts[i + 1].IsStretch)
-            {
-                judged.Add((cuts[i + 1].From, cuts[i + 1].To, default, StabilityVerdict.Undecided, true));
-            }
-        }
-
-        Onsets = [.. _drafts.Select(d => Counted(d, judged))];
-        var atFrom = _sweep.JudgeAt(range.From, ownMotion: true).Verdict;
-        var atTo = _sweep.JudgeAt(range.To, ownMotion: true).Verdict;
-        var intervals = ImmutableArray.CreateBuilder<GainInterval>(judged.Count);
-        for (int i = 0; i < judged.Count; i++)
-        {
-            var piece = judged[i];
-            var lower = i == 0 ? atFrom : AtCut(piece.From, judged[i - 1], piece);
-            var upper = i == judged.Count - 1 ? atTo : AtCut(piece.To, piece, judged[i + 1]);
+            var piece = pieces[i];
+            var lower = i == 0 ? atFrom : AtCut(piece.From, pieces[i - 1], piece);
+            var upper = i == pieces.Count - 1 ? atTo : AtCut(piece.To, piece, pieces[i + 1]);
             intervals.Add(new GainInterval(
                 piece.From, piece.To, lower, piece.Inside, upper, piece.Count,
-                piece.Open ? null : LeastDamped(piece.From, piece.To, lower != piece.Inside, upper != piece.Inside)));
+                piece.IsOpen ? null : LeastDamped(piece.From, piece.To, lower != piece.Inside, upper != piece.Inside)));
         }
 
         Intervals = intervals.ToImmutable();
     }
 
-    private sealed record Cut(double From, double To, bool IsStretch);
+    private List<Piece> Pieces()
+    {
+        var cuts = Cuts();
+        var pieces = new List<Piece>();
+        for (int i = 0; i + 1 < cuts.Count; i++)
+        {
+            var piece = Judged(cuts[i], cuts[i + 1]);
+            bool joins = cuts[i].Kind == CutKind.Edge && pieces.Count > 0 && !pieces[^1].IsOpen
+                && pieces[^1].Inside == piece.Inside && pieces[^1].Count.Growing == piece.Count.Growing;
+            if (joins)
+            {
+                pieces[^1] = piece with { From = pieces[^1].From };
+            }
+            else
+            {
+                pieces.Add(piece);
+            }
 
-    /// <summary>Points and stretches that end an interval, ascending and apart; the ends of the range are the first and last.</summary>
+            if (cuts[i + 1].Kind == CutKind.Open)
+            {
+                pieces.Add(new Piece(cuts[i + 1].From, cuts[i + 1].To, default, StabilityVerdict.Undecided, true));
+            }
+        }
+
+        return pieces;
+    }
+
+    private Piece Judged(Cut below, Cut above)
+    {
+        var (from, to) = (below.To, above.From);
+        double middle = 0.5 * (from + to);
+        var count = _sweep.CountAt(middle);
+        var verdict = count.Verdict;
+        bool onAxis = _onAxis.Any(s => s.From <= middle && s.To >= middle);
+        if (verdict != StabilityVerdict.Unstable && (onAxis || verdict == StabilityVerdict.Undecided))
+        {
+            double inset = 1e-9 * (to - from);
+            verdict = _sweep.TheoremOver(
+                below.Kind == CutKind.Onset ? from + inset : from, above.Kind == CutKind.Onset ? to - inset : to);
+        }
+
+        return new Piece(from, to, count, verdict, false);
+    }
+
+    /// <summary>What ends an interval, ascending and apart; the ends of the range are the first and last.</summary>
     private List<Cut> Cuts()
     {
         var range = _sweep.Path.Range;
-        var cuts = new List<Cut> { new(range.From, range.From, false) };
-        var inner = _drafts.Select(d => new Cut(d.Gain, d.Gain, false)).Concat(_stretches.Select(s => new Cut(s.From, s.To, true)));
-        foreach (var cut in inner.OrderBy(c => c.From).ThenByDescending(c => c.To))
+        double near = 4 * SweepRun.Inset * range.Width;
+        var cuts = new List<Cut> { new(range.From, range.From, CutKind.Edge) };
+        var hard = _drafts.Select(d => new Cut(d.Gain, d.Gain, CutKind.Onset)).Concat(_open.Select(s => new Cut(s.From, s.To, CutKind.Open)));
+        foreach (var cut in hard.OrderBy(c => c.From).ThenByDescending(c => c.To))
         {
-            if (cut.From <= cuts[^1].To && cuts.Count > 1)
+            bool covered = cuts.Count > 1 && cut.From <= cuts[^1].To;
+            bool together = cut.Kind == CutKind.Onset && cuts[^1].Kind == CutKind.Onset && AreTogether(cuts[^1].From, cut.From);
+            if (!covered && !together)
             {
-                continue;
+                cuts.Add(cut);
             }
-
-            if (cuts.Count > 1 && !cut.IsStretch && !cuts[^1].IsStretch && AreTogether(cuts[^1].From, cut.From))
-            {
-                continue;
-            }
-
-            cuts.Add(cut);
         }
 
-        cuts.Add(new Cut(range.To, range.To, false));
-        return cuts;
+        cuts.Add(new Cut(range.To, range.To, CutKind.Edge));
+        foreach (double edge in _onAxis.SelectMany(s => new[] { s.From, s.To }))
+        {
+            if (cuts.All(c => edge < c.From - near || edge > c.To + near))
+            {
+                cuts.Add(new Cut(edge, edge, CutKind.Edge));
+            }
+        }
+
+        return [.. cuts.OrderBy(c => c.From)];
     }
 
     private bool AreTogether(double a, double b)
@@ -93,10 +141,10 @@ internal sealed class IntervalLedger
         return _drafts.First(d => d.Gain == b).IsTogetherWith(first);
     }
 
-    private static StabilityOnset Counted(OnsetDraft draft, List<(double From, double To, RootCount Count, StabilityVerdict Inside, bool Open)> judged)
+    private static StabilityOnset Counted(OnsetDraft draft, List<Piece> pieces)
     {
-        var below = judged.LastOrDefault(p => !p.Open && p.To <= draft.Gain + draft.Uncertainty, judged[0]).Count;
-        var above = judged.FirstOrDefault(p => !p.Open && p.From >= draft.Gain - draft.Uncertainty, judged[^1]).Count;
+        var below = pieces.LastOrDefault(p => !p.IsOpen && p.To <= draft.Gain + draft.Uncertainty, pieces[0]).Count;
+        var above = pieces.FirstOrDefault(p => !p.IsOpen && p.From >= draft.Gain - draft.Uncertainty, pieces[^1]).Count;
         var direction = Math.Sign(above.Growing - below.Growing) switch
         {
             > 0 => CrossingDirection.Destabilising,
@@ -109,26 +157,25 @@ internal sealed class IntervalLedger
     }
 
     /// <summary>
-    /// At an onset the crossing root is on the axis: marginal, unless another root grows on both sides. At infinity and at
-    /// the ends of an open stretch nothing is claimed.
+    /// At an onset the crossing root is on the axis: marginal, unless another root grows on both sides. At infinity nothing
+    /// is claimed; elsewhere the gain is judged by itself.
     /// </summary>
-    private StabilityVerdict AtCut(
-        double gain,
-        (double From, double To, RootCount Count, StabilityVerdict Inside, bool Open) left,
-        (double From, double To, RootCount Count, StabilityVerdict Inside, bool Open) right)
+    private StabilityVerdict AtCut(double gain, Piece left, Piece right)
     {
-        if (left.Open || right.Open)
+        var here = _drafts.Where(d => Math.Abs(d.Gain - gain) <= d.Uncertainty).ToArray();
+        if (here.Length == 0 || left.IsOpen || right.IsOpen)
         {
-            return _sweep.JudgeAt(gain, ownMotion: true).Verdict;
+            return _sweep.JudgeAt(gain);
         }
 
-        var here = _drafts.Where(d => Math.Abs(d.Gain - gain) <= d.Uncertainty).ToArray();
-        if (here.Any(d => d.Kind == OnsetKind.ThroughInfinity) || left.Count.Undecided > 0 || right.Count.Undecided > 0)
+        if (here.Any(d => d.Kind == OnsetKind.ThroughInfinity))
         {
             return StabilityVerdict.Undecided;
         }
 
-        return Math.Min(left.Count.Growing, right.Count.Growing) > 0 ? StabilityVerdict.Unstable : StabilityVerdict.Marginal;
+        return Math.Min(left.Count.Growing, right.Count.Growing) > 0 ? StabilityVerdict.Unstable
+            : left.Count.Undecided > 0 || right.Count.Undecided > 0 ? StabilityVerdict.Undecided
+            : StabilityVerdict.Marginal;
     }
 
     /// <summary>Least damping, a little away from an end that has another verdict: damping vanishes there by itself.</summary>

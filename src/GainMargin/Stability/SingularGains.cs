@@ -177,7 +177,7 @@ internal sealed class SingularGains
         }
 
         // Rows of the loops are scaled to the open matrix, so that the measure does not depend on the unit of the gain.
-        double size = solution.SubMatrix(0, n, 0, moving.Length).FrobeniusNorm() * Matrices.Open.Stiffness.FrobeniusNorm() / (Matrices.Drive.FrobeniusNorm() + double.Epsilon);
+        double size = Dense.Norm(solution.SubMatrix(0, n, 0, moving.Length)) * Dense.Norm(Matrices.Open.Stiffness) / (Dense.Norm(Matrices.Drive) + double.Epsilon);
         return (output * solution, size);
     }
 

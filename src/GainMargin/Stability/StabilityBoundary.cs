@@ -1,5 +1,6 @@
 using System.Collections.Immutable;
 using System.Text.Json.Serialization;
+using GainMargin.Numerics;
 
 namespace GainMargin;
 
@@ -95,8 +96,10 @@ public sealed class StabilityBoundary
     /// <param name="gain">The gain, in the unit of the path.</param>
     /// <param name="nearest">The nearest onset.</param>
     /// <returns>Whether there is an onset at all.</returns>
+    /// <exception cref="ArgumentOutOfRangeException">The gain is not finite.</exception>
     public bool TryGetNearest(double gain, [System.Diagnostics.CodeAnalysis.NotNullWhen(true)] out NearestOnset? nearest)
     {
+        Guard.Finite(gain);
         var sameSign = Onsets.Where(o => o.Gain * gain > 0).ToArray();
         var onset = sameSign.Length > 0
             ? sameSign.MinBy(o => Math.Abs(Math.Log(o.Gain / gain)))

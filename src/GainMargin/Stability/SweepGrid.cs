@@ -12,10 +12,11 @@ internal static class SweepGrid
     /// <summary>Share of a step by which a sample may be moved aside; steps are shorter by as much.</summary>
     public const double Aside = 0.05;
 
-    public static double[] Between(double from, double to, double width, double maximumStep)
+    public static double[] Between(double from, double to, double width, SweepOptions options)
     {
-        double step = (1 - Aside) * maximumStep * width;
-        int count = Math.Max(1, (int)Math.Ceiling((to - from) / step));
+        // More nodes than the budget allows would not be reached.
+        double steps = Math.Ceiling((to - from) / ((1 - Aside) * options.MaximumStep * width));
+        int count = (int)Math.Clamp(steps, 1, options.MaximumDecompositions + 1.0);
         double reach = Math.Max(Math.Abs(from), Math.Abs(to));
         var nodes = new SortedSet<double> { from, to };
         for (int i = 1; i < count; i++)

@@ -1,3 +1,4 @@
+using System.Collections.Immutable;
 using GainMargin.Numerics;
 using MathNet.Numerics.LinearAlgebra;
 
@@ -13,7 +14,7 @@ internal sealed class SweepModel
     {
         Path = path;
         _cancellation = cancellation;
-        _polynomials = path.GainPolynomials();
+        _polynomials = Array.ConvertAll(path.GainPolynomials(), Trimmed);
         Model = new NormalisedModel(path.Nominal.Pencil);
         Permanent = FindPermanent();
     }
@@ -41,23 +42,37 @@ internal sealed class SweepModel
     }
 
     /// <summary>The verdict at one value: by count with polished roots, or by a theorem where the count leaves it open.</summary>
-    /// <param name="value">The value.</param>
-    /// <param name="ownMotion">Whether rigid motion that is free only at this value is split off as well.</param>
-    public (RootCount Count, StabilityVerdict Verdict, RootSet Roots) JudgeAt(double value, bool ownMotion)
+    /// <remarks>Rigid motion that is free only at this value is split off as well.</remarks>
+    public StabilityVerdict JudgeAt(double value)
     {
         double[] gains = GainsAt(value);
-        var rigid = Permanent;
-        if (ownMotion)
+        var count = Counted(value, () => RootSet.Polished(Model, gains, RigidMotion.Of(Model.Hat.At(gains)))).Count;
+        return count.Verdict == StabilityVerdict.Undecided ? SpectrumFinder.Decide(count, FactsAt(value)) : count.Verdict;
+    }
+
+    /// <summary>Root count at one value, polished; only the permanent rigid motion is split off.</summary>
+    public RootCount CountAt(double value)
+    {
+        double[] gains = GainsAt(value);
+        return Counted(value, () => RootSet.Polished(Model, gains, Permanent)).Count;
+    }
+
+    /// <summary>
+    /// Verdict of a theorem that holds for every value between two: the conditions of those that give <em>stable</em> and
+    /// <em>marginal</em> are convex in the matrices, so where these are affine in the value it is enough that both ends meet
+    /// them. Undecided if there is none.
+    /// </summary>
+    public StabilityVerdict TheoremOver(double from, double to)
+    {
+        if (Model.Hat.Residual is not null || _polynomials.Any(p => p.Length > 2))
         {
-            rigid = RigidMotion.Of(Model.Hat.At(gains));
+            return StabilityVerdict.Undecided;
         }
 
-        var roots = Counted(value, () => RootSet.Polished(Model, gains, rigid));
-        var count = roots.Count;
-        var verdict = count.Verdict == StabilityVerdict.Undecided
-            ? SpectrumFinder.Decide(count, SplitFinder.Run(Path.At(value)).Facts)
-            : count.Verdict;
-        return (count, verdict, roots);
+        var there = FactsAt(to);
+        return FactsAt(from)
+            .Where(f => f.Verdict is StabilityVerdict.Stable or StabilityVerdict.Marginal && there.Any(t => t.Name == f.Name && t.Verdict == f.Verdict))
+            .Select(f => f.Verdict).FirstOrDefault(StabilityVerdict.Undecided);
     }
 
     public RootSet RootsAt(double value) => Counted(value, () => RootSet.Raw(Model, GainsAt(value), Permanent));
@@ -74,6 +89,13 @@ internal sealed class SweepModel
         return (Onto(Permanent.Drifting), Onto(Permanent.Free));
     }
 
+    /// <summary>Without leading zeros: a loop whose gain stays zero does not move.</summary>
+    private static double[] Trimmed(double[] polynomial)
+    {
+        int last = Array.FindLastIndex(polynomial, c => c != 0);
+        return polynomial[..Math.Max(1, last + 1)];
+    }
+
     private static double Evaluate(double[] polynomial, double value)
     {
         double sum = 0;
@@ -84,6 +106,8 @@ internal sealed class SweepModel
 
         return sum;
     }
+
+    private ImmutableArray<DecidingFact> FactsAt(double value) => SplitFinder.Run(Path.At(value)).Facts;
 
     private T Counted<T>(double value, Func<T> solve)
     {
@@ -117,7 +141,7 @@ internal sealed class SweepModel
     /// <summary>The held matrix with the patterns of the moving loops below it, each of the size of the matrix.</summary>
     private Matrix<double> Stacked(Matrix<double> held, Matrix<double> patterns, Func<int, bool> counts)
     {
-        double size = held.FrobeniusNorm();
+        double size = Dense.Norm(held);
         size = size > 0 ? size : 1;
         var stacked = held;
         for (int k = 0; k < Model.Hat.LoopCount; k++)

@@ -5,7 +5,8 @@ namespace GainMargin;
 /// <summary>One sweep from path to boundary: barriers first, then the pieces between them, then the verdicts.</summary>
 internal sealed class SweepRun
 {
-    private const double Inset = 1e-8;
+    /// <summary>Distance from a divergence at which sampling stops, as a fraction of the range.</summary>
+    public const double Inset = 1e-8;
 
     private readonly GainPath _path;
     private readonly SweepOptions _options;
@@ -34,8 +35,8 @@ internal sealed class SweepRun
             .Concat(divergences.Found.Where(IsInside).Select(evidence.OfDivergence))
             .Concat(infinities.Found.Where(IsInside).Select(evidence.OfInfinity))
             .OrderBy(o => o.Gain).ThenBy(o => o.Frequency).ToList();
-        var stretches = Merged(_search.Open);
-        var ledger = new IntervalLedger(_sweep, SamplesOf(_search.Steps), WithoutRepeats(found), stretches);
+        var stretches = GainStretch.Merged(_search.Open);
+        var ledger = new IntervalLedger(_sweep, SamplesOf(_search.Steps), WithoutRepeats(found), stretches, GainStretch.Merged(_search.OnAxis));
         ledger.Run();
         Report("done", 1);
 
@@ -51,24 +52,6 @@ internal sealed class SweepRun
 
     private static ImmutableArray<SweepSample> SamplesOf(List<SweepStep> steps)
         => [.. steps.SelectMany(s => new[] { s.Left, s.Right }).DistinctBy(s => s.Gain).OrderBy(s => s.Gain)];
-
-    private static List<OpenStretch> Merged(List<OpenStretch> open)
-    {
-        var merged = new List<OpenStretch>();
-        foreach (var stretch in open.OrderBy(o => o.From))
-        {
-            if (merged.Count > 0 && stretch.From <= merged[^1].To)
-            {
-                merged[^1] = merged[^1] with { To = Math.Max(merged[^1].To, stretch.To) };
-            }
-            else
-            {
-                merged.Add(stretch);
-            }
-        }
-
-        return merged;
-    }
 
     /// <summary>Two branches of equal frequency that cross together, as in a structure of two equal halves, are one onset.</summary>
     private static List<OnsetDraft> WithoutRepeats(List<OnsetDraft> found)

@@ -9,5 +9,9 @@ internal sealed record SweepSample(double Gain, RootSet Roots, Complex[] Slopes)
 
     public double[] Uncertainty => Roots.Uncertainty;
 
-    public int Growing => Enumerable.Range(0, Values.Length).Count(i => Roots.VerdictOf(i) == StabilityVerdict.Unstable);
+    /// <summary>Whether a root lies on the imaginary axis within rounding.</summary>
+    public bool IsOnAxis(int i) => Math.Abs(Values[i].Real) <= Uncertainty[i];
+
+    /// <summary>Whether the slope moves a root by no more than rounding over a width.</summary>
+    public bool IsFlat(int i, double width) => Math.Abs(Slopes[i].Real) * width <= 8 * Uncertainty[i];
 }

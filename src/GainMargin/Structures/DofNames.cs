@@ -26,7 +26,11 @@ public sealed class DofNames : IReadOnlyList<string>, IEquatable<DofNames>
 
     /// <summary>The name at a position.</summary>
     /// <param name="index">Position from zero.</param>
-    public string this[int index] => _names[index];
+    /// <exception cref="ArgumentOutOfRangeException">There is no such position.</exception>
+    public string this[int index]
+        => (uint)index < (uint)_names.Length
+            ? _names[index]
+            : throw new ArgumentOutOfRangeException(nameof(index), index, Guard.Invariant($"There is no name {index}; there are {_names.Length}."));
 
     /// <summary>Makes the list.</summary>
     /// <param name="names">The names in order.</param>

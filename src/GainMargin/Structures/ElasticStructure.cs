@@ -60,17 +60,7 @@ public sealed class ElasticStructure
     {
         Guard.NotNull(matrices);
         var dofs = Guard.NotNull(matrices.Dofs, nameof(matrices));
-        if (dofs.Count == 0)
-        {
-            throw new ArgumentException("A structure needs at least one degree of freedom.", nameof(matrices));
-        }
-
-        Guard.Matrix(matrices.Mass, dofs, dofs, "mass");
-        Guard.Matrix(matrices.Damping, dofs, dofs, "damping");
-        Guard.Matrix(matrices.Stiffness, dofs, dofs, "stiffness");
-        var mass = MassCheck.Symmetrised(matrices.Mass, dofs);
-        return new ElasticStructure(
-            dofs, dofs, mass, Dense.Copy(matrices.Damping), Dense.Copy(matrices.Stiffness), null, null, units);
+        return Checked(dofs, nameof(matrices), matrices.Mass, matrices.Damping, matrices.Stiffness, _ => nameof(matrices), units);
     }
 
     /// <summary>A structure from matrices laid out row by row, which are copied.</summary>
@@ -84,15 +74,9 @@ public sealed class ElasticStructure
         DofNames dofs, ReadOnlySpan<double> mass, ReadOnlySpan<double> damping, ReadOnlySpan<double> stiffness, UnitLabels? units = null)
     {
         int n = Guard.NotNull(dofs).Count;
-        return FromMatrices(
-            new StructureMatrices
-            {
-                Dofs = dofs,
-                Mass = RowMajor(mass, n, nameof(mass)),
-                Damping = RowMajor(damping, n, nameof(damping)),
-                Stiffness = RowMajor(stiffness, n, nameof(stiffness)),
-            },
-            units);
+        return Checked(
+            dofs, nameof(dofs), RowMajor(mass, n, nameof(mass)), RowMajor(damping, n, nameof(damping)), RowMajor(stiffness, n, nameof(stiffness)),
+            matrix => matrix, units);
     }
 
     /// <summary>A structure from <c>m</c> of its modes; its coordinates are the modal ones, named <c>mode 1</c> to <c>mode m</c>.</summary>
@@ -114,16 +98,18 @@ public sealed class ElasticStructure
         var dofs = DofNames.Of([.. Enumerable.Range(1, m).Select(k => Guard.Invariant($"mode {k}"))]);
         for (int k = 0; k < m; k++)
         {
-            if (modes.Frequencies[k].IsUnlimited)
+            double radians = modes.Frequencies[k].Radians;
+            if (!double.IsFinite(radians * radians))
             {
-                throw new ArgumentException($"The frequency of {dofs[k]} is unlimited; it must be finite.", nameof(modes));
+                string how = modes.Frequencies[k].IsUnlimited ? "unlimited" : Guard.Show(radians);
+                throw new ArgumentException($"The frequency of {dofs[k]} is {how}; its square must be finite.", nameof(modes));
             }
         }
 
-        Guard.Matrix(modes.Shapes, points, dofs, "shapes");
+        Guard.Matrix(modes.Shapes, points, dofs, "shapes", nameof(modes));
         if (modes.ResidualFlexibility is not null)
         {
-            Guard.Matrix(modes.ResidualFlexibility, points, points, "residual flexibility");
+            Guard.Matrix(modes.ResidualFlexibility, points, points, "residual flexibility", nameof(modes));
         }
 
         return new ElasticStructure(
@@ -135,8 +121,8 @@ public sealed class ElasticStructure
     /// <summary>Number of coordinates and points.</summary>
     public override string ToString()
         => Shapes is null
-            ? Guard.Invariant($"structure with {Dofs.Count} degrees of freedom")
-            : Guard.Invariant($"structure with {Dofs.Count} modes and {Points.Count} points");
+            ? $"structure with {Guard.Count(Dofs.Count, "degree of freedom", "degrees of freedom")}"
+            : $"structure with {Guard.Count(Dofs.Count, "mode", "modes")} and {Guard.Count(Points.Count, "point", "points")}";
 
     /// <summary>Displacement of one point per unit of each coordinate.</summary>
     internal double[] RowAt(string point)
@@ -151,6 +137,29 @@ public sealed class ElasticStructure
         return row;
     }
 
+    /// <param name="dofs">Names of the degrees of freedom.</param>
+    /// <param name="dofsParameter">The caller's argument that holds them.</param>
+    /// <param name="mass">Mass.</param>
+    /// <param name="damping">Damping.</param>
+    /// <param name="stiffness">Stiffness.</param>
+    /// <param name="parameterOf">The caller's argument that holds the matrix of a name.</param>
+    /// <param name="units">Labels of the units.</param>
+    private static ElasticStructure Checked(
+        DofNames dofs, string dofsParameter, Matrix<double> mass, Matrix<double> damping, Matrix<double> stiffness,
+        Func<string, string> parameterOf, UnitLabels? units)
+    {
+        if (dofs.Count == 0)
+        {
+            throw new ArgumentException("A structure needs at least one degree of freedom.", dofsParameter);
+        }
+
+        Guard.Matrix(mass, dofs, dofs, nameof(mass), parameterOf(nameof(mass)));
+        Guard.Matrix(damping, dofs, dofs, nameof(damping), parameterOf(nameof(damping)));
+        Guard.Matrix(stiffness, dofs, dofs, nameof(stiffness), parameterOf(nameof(stiffness)));
+        var symmetric = MassCheck.Symmetrised(mass, dofs, parameterOf(nameof(mass)));
+        return new ElasticStructure(dofs, dofs, symmetric, Dense.Copy(damping), Dense.Copy(stiffness), null, null, units);
+    }
+
     private static Matrix<double> ModalDamping(ModalTable modes, DofNames dofs)
     {
         int m = dofs.Count;
@@ -162,7 +171,7 @@ public sealed class ElasticStructure
 
         if (modes.DampingMatrix is not null)
         {
-            Guard.Matrix(modes.DampingMatrix, dofs, dofs, "damping");
+            Guard.Matrix(modes.DampingMatrix, dofs, dofs, "damping", nameof(modes));
             return Dense.Copy(modes.DampingMatrix);
         }
 
@@ -174,10 +183,10 @@ public sealed class ElasticStructure
 
         for (int k = 0; k < m; k++)
         {
-            if (!double.IsFinite(modes.DampingRatios[k]))
+            if (!double.IsFinite(2 * modes.DampingRatios[k] * modes.Frequencies[k].Radians))
             {
                 throw new ArgumentException(
-                    $"The damping ratio of {dofs[k]} is {Guard.Show(modes.DampingRatios[k])}; it must be finite.", nameof(modes));
+                    $"The damping ratio of {dofs[k]} is {Guard.Show(modes.DampingRatios[k])}; 2ζω must be finite.", nameof(modes));
             }
         }
 

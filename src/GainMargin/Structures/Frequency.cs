@@ -28,7 +28,7 @@ public readonly record struct Frequency : IComparable<Frequency>
     /// <summary>From a number of cycles.</summary>
     /// <param name="perTime">Cycles per unit of time.</param>
     /// <exception cref="ArgumentOutOfRangeException">Negative or not finite.</exception>
-    public static Frequency FromCycles(double perTime) => new(NotNegative(perTime, nameof(perTime)) * (2 * Math.PI));
+    public static Frequency FromCycles(double perTime) => new(Guard.Finite(NotNegative(perTime, nameof(perTime)) * (2 * Math.PI), nameof(perTime)));
 
     /// <inheritdoc/>
     public int CompareTo(Frequency other) => Radians.CompareTo(other.Radians);

@@ -8,7 +8,7 @@ namespace GainMargin;
 internal static class MassCheck
 {
     /// <summary>The mass with its rounding asymmetry removed.</summary>
-    public static Matrix<double> Symmetrised(Matrix<double> mass, DofNames dofs)
+    public static Matrix<double> Symmetrised(Matrix<double> mass, DofNames dofs, string parameter)
     {
         int n = dofs.Count;
         for (int i = 0; i < n; i++)
@@ -18,13 +18,13 @@ internal static class MassCheck
             {
                 throw new ArgumentException(
                     $"{Guard.Entry("mass", dofs[i], dofs[i])} is 0; degrees of freedom without mass are not supported yet: give it a mass or condense it out.",
-                    nameof(mass));
+                    parameter);
             }
 
             if (m < 0)
             {
                 throw new ArgumentException(
-                    $"{Guard.Entry("mass", dofs[i], dofs[i])} is {Guard.Show(m)}; the mass matrix must be positive definite.", nameof(mass));
+                    $"{Guard.Entry("mass", dofs[i], dofs[i])} is {Guard.Show(m)}; the mass matrix must be positive definite.", parameter);
             }
         }
 
@@ -38,17 +38,17 @@ internal static class MassCheck
                     throw new ArgumentException(
                         $"{Guard.Entry("mass", dofs[i], dofs[j])} is {Guard.Show(mass[i, j])} but {Guard.Entry("mass", dofs[j], dofs[i])} is " +
                         $"{Guard.Show(mass[j, i])}; the mass matrix must be symmetric.",
-                        nameof(mass));
+                        parameter);
                 }
             }
         }
 
         var symmetric = Dense.SymmetricPart(mass);
-        RequireDefinite(symmetric, dofs);
+        RequireDefinite(symmetric, dofs, parameter);
         return symmetric;
     }
 
-    private static void RequireDefinite(Matrix<double> mass, DofNames dofs)
+    private static void RequireDefinite(Matrix<double> mass, DofNames dofs, string parameter)
     {
         int n = dofs.Count;
         var unitDiagonal = DenseMatrix.Create(n, n, (i, j) => i == j ? 1 : mass[i, j] / Math.Sqrt(mass[i, i]) / Math.Sqrt(mass[j, j]));
@@ -65,6 +65,6 @@ internal static class MassCheck
             : "is singular to working precision; motion without mass is not supported yet";
         throw new ArgumentException(
             Guard.Invariant($"The mass matrix {how}: scaled to a unit diagonal its smallest eigenvalue is {values[0]:R}, in a direction led by \"{dofs[largest]}\"."),
-            nameof(mass));
+            parameter);
     }
 }

@@ -136,6 +136,59 @@ public sealed class OutcomeTests
         Assert.Equal(Math.Sqrt(2.0 / 7), onset.Frequency.Radians, 1e-9);
     }
 
+    /// <summary>Damping that changes sign far below what the roots can tell: nothing may be claimed, by whatever theorem.</summary>
+    [Theory]
+    [InlineData(2e-16, -1, 3e-16)]
+    [InlineData(1e-17, -1e-17, 1.5)]
+    public void Run_DampingChangesSignBelowRounding_NotCalledStable(double damping, double ratio, double to)
+    {
+        var boundary = GainSweep.Run(Boundaries.Path(Boundaries.One(1, damping, 1), Boundaries.Loop("g", "x", "x", new() { Rate = ratio }, 0.1 * to), 0, to));
+
+        Assert.All(boundary.Intervals, i => Assert.Equal(StabilityVerdict.Undecided, i.Inside));
+        Assert.Contains(boundary.Cautions, c => c.Kind == CautionKind.RootsOnAxis);
+    }
+
+    [Fact]
+    public void Run_DampingBelowRoundingButPositiveThroughout_StableByTheorem()
+    {
+        var boundary = GainSweep.Run(Boundaries.Path(Boundaries.One(1, 1e-17, 1), Boundaries.Loop("g", "x", "x", new() { Position = 1 }, 1), 0, 2));
+
+        Assert.Equal(StabilityVerdict.Stable, Assert.Single(boundary.Intervals).Inside);
+    }
+
+    [Fact]
+    public void Run_LosslessLoopSymmetricAtOneGainOnly_UndecidedNotMarginal()
+    {
+        // K = [[2, −1], [−1 + g, 1]] without damping: only at g = 0 a theorem speaks.
+        var structure = ElasticStructure.FromRowMajor(["x", "y"], [1, 0, 0, 1], [0, 0, 0, 0], [2, -1, -1, 1]);
+        var boundary = GainSweep.Run(Boundaries.Path(structure, Boundaries.Loop("g", "x", "y", new() { Position = 1 }, 0.1), -0.5, 0.5));
+
+        Assert.All(boundary.Intervals, i => Assert.Equal(StabilityVerdict.Undecided, i.Inside));
+    }
+
+    [Fact]
+    public void Run_UndampedModeThatNoLoopReaches_UndecidedWhereTheRestIsStableUnstableWhereItIsNot()
+    {
+        // x is damped by 0.1 − g; y swings without damping on its own.
+        var structure = ElasticStructure.FromRowMajor(["x", "y"], [1, 0, 0, 1], [0.1, 0, 0, 0], [1, 0, 0, 7]);
+        var boundary = GainSweep.Run(Boundaries.Path(structure, Boundaries.Loop("g", "x", "x", new() { Rate = -1 }, 0.05), 0, 1));
+
+        Assert.Equal([StabilityVerdict.Undecided, StabilityVerdict.Unstable], boundary.Intervals.Select(i => i.Inside));
+        Assert.Equal(0.1, Assert.Single(boundary.Onsets).Gain, 1e-13);
+    }
+
+    [Fact]
+    public void Run_LoopWhoseGainStaysZero_DoesNotHideTheFreeMotion()
+    {
+        var structure = ElasticStructure.FromRowMajor(["x", "y"], [1, 0, 0, 1], [0.1, -0.1, -0.1, 0.1], [1, -1, -1, 1]);
+        var law = ControlLaw.Of(Boundaries.Loop("p", "x", "x", new() { Position = 1 }, 0), Boundaries.Loop("d", "x", "x", new() { Rate = 1 }, 0.1));
+        var boundary = GainSweep.Run(GainPath.CommonFactor(ClosedLoop.Create(structure, law), GainRange.Between(0.5, 2)));
+
+        Assert.Equal(StabilityVerdict.Marginal, Assert.Single(boundary.Intervals).Inside);
+        Assert.Contains(boundary.Cautions, c => c.Kind == CautionKind.FreeMotion);
+        Assert.Equal(Coverage.Complete, boundary.Completeness.Divergence);
+    }
+
     [Fact]
     public void Run_StaticallySingularForEveryGain_DivergenceOnlySampled()
     {
