@@ -7,10 +7,11 @@ namespace GainMargin;
 
 /// <summary>
 /// Null vectors of a nearly singular matrix by bordering: <c>[Q b; cᴴ 0][v; μ] = [0; 1]</c> and its adjoint, with
-/// <c>bᴴw = 1</c>. The defect <c>μ</c> vanishes exactly where <c>Q</c> is singular, and <c>∂μ = −wᴴ(∂Q)v</c>.
+/// <c>bᴴw = 1</c>. The defect <c>μ = −wᴴQv</c> vanishes exactly where <c>Q</c> is singular, and <c>∂μ = −wᴴ(∂Q)v</c>; the
+/// product is taken anew from <c>Q</c>, so that the rounding of the factorisation does not enter it.
 /// </summary>
 /// <remarks>W. Govaerts, Numerical Methods for Bifurcations of Dynamical Equilibria, SIAM 2000, ch. 3 (from memory).</remarks>
-internal sealed record BorderedSystem(Complex Defect, Complex[] Right, Complex[] Left)
+internal sealed record BorderedSystem(Complex[] Right, Complex[] Left)
 {
     public static BorderedSystem? Solve(Matrix<Complex> q, Complex[] left, Complex[] right)
     {
@@ -22,7 +23,7 @@ internal sealed record BorderedSystem(Complex Defect, Complex[] Right, Complex[]
         end[n] = 1;
         var v = Dense.TrySolve(direct, end);
         var w = v is null ? null : Dense.TrySolve(direct.ConjugateTranspose(), end);
-        return v is null || w is null ? null : new BorderedSystem(v[n], v[..n], w[..n]);
+        return v is null || w is null ? null : new BorderedSystem(v[..n], w[..n]);
     }
 
     /// <summary><c>wᴴ x</c>.</summary>

@@ -72,8 +72,9 @@ public static class ClosedLoopAnalysis
         int k = Guard.NotNull(closed).Law.IndexOf(loop);
         var definition = closed.Law.Loops[k].Loop;
         var coupling = definition.Coupling;
-        NamedMatrix Times(double ratio) => new(coupling.Rows, coupling.Columns, coupling.Values * (closed.Gains[k] * ratio));
+        var strength = closed.Pencil.CouplingAt(closed.Gains);
+        NamedMatrix Times(double gain) => new(coupling.Rows, coupling.Columns, coupling.Values * gain);
         return new LoopContribution(
-            Times(definition.Ratios.Position), Times(definition.Ratios.Rate), Times(definition.Ratios.Acceleration), definition.IsCollocated);
+            Times(strength.Stiffness[k, k]), Times(strength.Damping[k, k]), Times(strength.Mass[k, k]), definition.IsCollocated);
     }
 }

@@ -78,14 +78,12 @@ public sealed class EnergyBalance
         double kinetic = 0.5 * omega * omega * Form(matrices.Mass, v).Real;
         double Share(double work) => kinetic == 0 ? 0 : work / kinetic;
         var loops = ImmutableArray.CreateBuilder<LoopWork>();
-        double byLoops = 0;
         var zero = matrices.Mass * 0;
         for (int k = 0; k < closed.Law.Loops.Length; k++)
         {
             var c = closed.Pencil.CouplingOf(k, closed.Gains);
             double work = Share(Work(closed.Pencil.Added(zero, c.Mass), closed.Pencil.Added(zero, c.Damping), closed.Pencil.Added(zero, c.Stiffness), omega, v));
             loops.Add(new LoopWork(closed.Law.Loops[k].Loop.Name, work));
-            byLoops += work;
         }
 
         double dissipative = Share(-Math.PI * omega * Form(Dense.SymmetricPart(matrices.Damping), v).Real);

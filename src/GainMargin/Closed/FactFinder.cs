@@ -14,13 +14,13 @@ internal static class FactFinder
         QuadraticPencil physical, QuadraticPencil hat, SymmetricPart conservative, SymmetricPart dissipative)
     {
         var facts = ImmutableArray.CreateBuilder<DecidingFact>();
-        bool massDefinite = IsSymmetric(physical.Mass) && Dense.TryCholesky(hat.Mass) is not null;
+        bool massDefinite = Dense.IsSymmetric(physical.Mass) && Dense.TryCholesky(hat.Mass) is not null;
         if (!massDefinite)
         {
             return [];
         }
 
-        bool conservativeOnly = IsSymmetric(physical.Stiffness);
+        bool conservativeOnly = Dense.IsSymmetric(physical.Stiffness);
         bool damped = dissipative.Definiteness == Definiteness.PositiveDefinite;
         bool lossless = Dense.Norm(Dense.SymmetricPart(physical.Damping)) == 0;
         if (conservativeOnly && damped && conservative.Definiteness == Definiteness.PositiveDefinite)
@@ -56,7 +56,8 @@ internal static class FactFinder
                 "sum of the roots of the characteristic polynomial; common practice, no source"));
         }
 
-        if (!conservativeOnly && Dense.Norm(physical.Damping) == 0 && IsMultipleOfIdentity(Dense.SymmetricPart(hat.Stiffness)))
+        if (!conservativeOnly && Dense.Norm(physical.Damping) == 0 && IsMultipleOfIdentity(Dense.SymmetricPart(hat.Stiffness))
+            && Dense.Norm(Dense.SkewPart(hat.Stiffness)) > 2 * hat.Order * Tolerances.Backward(hat.Order, Dense.Norm(hat.Stiffness)))
         {
             facts.Add(new DecidingFact(
                 "Merkin", StabilityVerdict.Unstable, "equal frequencies, no damping, and circulatory stiffness however small", Merkin));
@@ -65,8 +66,6 @@ internal static class FactFinder
         return facts.ToImmutable();
     }
 
-    private static bool IsSymmetric(Matrix<double> a) => Dense.Norm(Dense.SkewPart(a)) == 0;
-
     private static bool IsNegativeDeterminant(Matrix<double> stiffness)
     {
         var system = RealEigen.Solve(stiffness);
@@ -74,7 +73,7 @@ internal static class FactFinder
         for (int i = 0; i < system.Values.Length; i++)
         {
             bool real = system.Values[i].Imaginary == 0;
-            if (Complex.Abs(system.Values[i]) <= system.Uncertainty[i])
+            if (Complex.Abs(system.Values[i]) <= Math.Max(system.Uncertainty[i], Tolerances.NullSpace(stiffness.RowCount, Dense.Norm(stiffness))))
             {
                 return false;
             }

@@ -2,7 +2,8 @@ namespace GainMargin;
 
 /// <summary>
 /// What one loop adds to the closed-loop matrices at its present gain, other loops left out: rows are the points driven,
-/// columns the points sensed, <c>g·p·b·sᵀ</c> for stiffness and likewise for damping and mass.
+/// columns the points sensed, <c>g·p·b·sᵀ</c> for stiffness and likewise for damping and mass; a residual flexibility that
+/// the loop sees weakens it, <c>g·p/(1 + g·p·r)</c>.
 /// </summary>
 /// <param name="Stiffness">Added stiffness.</param>
 /// <param name="Damping">Added damping.</param>

@@ -140,7 +140,8 @@ internal sealed class LoopedPencil
     }
 
     /// <summary>Adds <c>B C Sᵀ</c>.</summary>
-    public Matrix<double> Added(Matrix<double> to, Matrix<double> coupling) => to + (Drive * coupling).TransposeAndMultiply(Sense);
+    public Matrix<double> Added(Matrix<double> to, Matrix<double> coupling)
+        => coupling.ForAll(c => c == 0) ? to : to + (Drive * coupling).TransposeAndMultiply(Sense);
 
     private static Matrix<double>? ResidualOf(ElasticStructure structure, ControlLaw law)
     {

@@ -36,9 +36,8 @@ internal sealed class ModalSolution
     /// <summary>Left null vectors of <c>Q(s)</c>, unit length.</summary>
     public Complex[][] Left { get; }
 
-    public static ModalSolution Solve(LoopedPencil model, ReadOnlySpan<double> gains, RigidMotion rigid)
+    public static ModalSolution Solve(LoopedPencil model, QuadraticPencil closed, RigidMotion rigid)
     {
-        var closed = model.At(gains);
         if (!closed.IsFinite)
         {
             throw new NumericalFailureException("closed-loop matrices", "A closed-loop matrix is not finite at this gain.");
@@ -83,6 +82,9 @@ internal sealed class ModalSolution
         Matrix<double> Side(Matrix<double> a) => rigid.OnLeft ? a.Transpose() : a;
     }
 
+    /// <summary><c>wᴴQ_s v</c> of one root.</summary>
+    public Complex Slope(int i) => BorderedSystem.Inner(Left[i], _closed.SlopeTimes(Values[i], Right[i]));
+
     /// <summary>
     /// Derivative of every root where the gains change at given slopes,
     /// <c>s′ = −wᴴ(s²M′ + sD′ + K′)v / wᴴ(2sM + D)v</c>.
@@ -114,7 +116,7 @@ internal sealed class ModalSolution
                 sum -= Complex.Conjugate(driven[p]) * force;
             }
 
-            result[i] = sum / BorderedSystem.Inner(Left[i], _closed.SlopeTimes(s, Right[i]));
+            result[i] = sum / Slope(i);
         }
 
         return result;

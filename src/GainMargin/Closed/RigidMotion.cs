@@ -20,10 +20,15 @@ internal sealed record RigidMotion(Matrix<double> Elastic, Matrix<double> Drifti
     public int ZeroRoots => Drifting.ColumnCount + (2 * Free.ColumnCount);
 
     /// <summary>Rigid motion of one closed loop.</summary>
-    public static RigidMotion Of(QuadraticPencil closed)
-        => Larger(
-            Find(closed.Stiffness, closed.Damping, false),
-            Find(closed.Stiffness.Transpose(), closed.Damping.Transpose(), true));
+    public static RigidMotion Of(NormalisedModel model, ReadOnlySpan<double> gains)
+    {
+        var closed = model.ClosedHat(gains);
+        var even = model.Even.At(gains).Stiffness;
+        var moduli = model.Even.ModuliAt(gains).Stiffness;
+        return Larger(
+            Find(closed.Stiffness, closed.Damping, false, basis => model.IsAnnihilated(even, moduli, basis)),
+            Find(closed.Stiffness.Transpose(), closed.Damping.Transpose(), true, basis => model.IsAnnihilated(even.Transpose(), moduli.Transpose(), basis)));
+    }
 
     /// <summary>The side that accounts for more zero roots; the right one where both do.</summary>
     public static RigidMotion Larger(RigidMotion right, RigidMotion left) => left.ZeroRoots > right.ZeroRoots ? left : right;
@@ -31,13 +36,14 @@ internal sealed record RigidMotion(Matrix<double> Elastic, Matrix<double> Drifti
     /// <param name="stiffness">Everything that can resist displacement, stacked in rows.</param>
     /// <param name="damping">Everything that can resist velocity, stacked in rows.</param>
     /// <param name="onLeft">Whether the rows belong to the transposed matrices.</param>
-    public static RigidMotion Find(Matrix<double> stiffness, Matrix<double> damping, bool onLeft)
+    /// <param name="holds">Whether a basis really meets no stiffness, row by row.</param>
+    public static RigidMotion Find(Matrix<double> stiffness, Matrix<double> damping, bool onLeft, Func<Matrix<double>, bool> holds)
     {
         int n = stiffness.ColumnCount;
         var (rigid, elastic) = Dense.NullSpace(stiffness, Tolerances.NullSpace(n, Dense.Norm(stiffness)));
-        if (rigid.ColumnCount == 0)
+        if (rigid.ColumnCount == 0 || !holds(rigid))
         {
-            return new RigidMotion(elastic, rigid, rigid, onLeft);
+            return new RigidMotion(Dense.Identity(n), Dense.Zero(n, 0), Dense.Zero(n, 0), onLeft);
         }
 
         var (free, drifting) = Dense.NullSpace(damping * rigid, Tolerances.NullSpace(n, Dense.Norm(damping)));

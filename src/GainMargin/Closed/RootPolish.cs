@@ -25,7 +25,7 @@ internal static class RootPolish
             }
 
             var slope = -BorderedSystem.Inner(system.Left, closed.SlopeTimes(s, system.Right));
-            var change = -system.Defect / slope;
+            var change = BorderedSystem.Inner(system.Left, closed.Times(s, system.Right)) / slope;
             double size = Complex.Abs(change);
             double rounding = BorderedSystem.Rounding(moduli, Complex.Abs(s), system.Left, system.Right) / Complex.Abs(slope);
             if (!double.IsFinite(size) || !double.IsFinite(rounding))

@@ -26,7 +26,18 @@ internal sealed class RootSet
 
     /// <summary>Roots straight from the decomposition.</summary>
     public static RootSet Raw(NormalisedModel model, ReadOnlySpan<double> gains, RigidMotion rigid)
-        => new(ModalSolution.Solve(model.Hat, gains, rigid), rigid);
+    {
+        var roots = new RootSet(ModalSolution.Solve(model.Hat, model.ClosedHat(gains), rigid), rigid);
+        var even = model.Even.At(gains);
+        for (int i = 0; i < roots.Values.Length; i++)
+        {
+            roots.Uncertainty[i] += roots.Values[i].Imaginary < 0
+                ? roots.Uncertainty[i - 1] - roots.Uncertainty[i]
+                : model.NormalisationError(roots.Values[i], roots.Solution.Left[i], roots.Solution.Right[i], roots.Solution.Slope(i), even);
+        }
+
+        return roots;
+    }
 
     /// <summary>Roots whose side of the axis the decomposition leaves open are polished on the evenly scaled matrices.</summary>
     public static RootSet Polished(NormalisedModel model, ReadOnlySpan<double> gains, RigidMotion rigid)
@@ -58,6 +69,11 @@ internal sealed class RootSet
 
     private bool IsSeparate(int i)
     {
+        if (Rigid.ZeroRoots > 0 && Complex.Abs(Values[i]) <= Uncertainty[i])
+        {
+            return false;
+        }
+
         for (int j = 0; j < Values.Length; j++)
         {
             if (j != i && Complex.Abs(Values[i] - Values[j]) <= Uncertainty[i] + Uncertainty[j])

@@ -11,8 +11,8 @@ internal static class SpectrumFinder
     {
         cancellation.ThrowIfCancellationRequested();
         var model = new NormalisedModel(closed.Pencil);
-        var hat = model.Hat.At(closed.Gains);
-        var rigid = RigidMotion.Of(hat);
+        var hat = model.ClosedHat(closed.Gains);
+        var rigid = RigidMotion.Of(model, closed.Gains);
         var roots = RootSet.Polished(model, closed.Gains, rigid);
         cancellation.ThrowIfCancellationRequested();
         var even = model.Even.At(closed.Gains);
@@ -30,7 +30,7 @@ internal static class SpectrumFinder
         }
 
         var facts = SplitFinder.Run(closed).Facts;
-        var sorted = all.OrderBy(r => Math.Abs(r.Value.Imaginary)).ThenBy(r => r.Value.Real).ThenByDescending(r => r.Value.Imaginary).ToImmutableArray();
+        var sorted = all.OrderBy(r => Math.Abs(r.Value.Imaginary)).ThenBy(r => r.Value.Real).ToImmutableArray();
         return new Spectrum(sorted, Decide(RootCount.Of(sorted.Select(r => r.Verdict)), facts), facts);
     }
 

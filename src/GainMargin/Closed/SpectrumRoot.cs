@@ -19,7 +19,10 @@ public sealed class SpectrumRoot
     /// <summary>The root, per unit of time.</summary>
     public Complex Value { get; }
 
-    /// <summary>Bound of its rounding error, per unit of time, for the matrices as given.</summary>
+    /// <summary>
+    /// Bound of its rounding error, per unit of time, for the matrices as given. Zero for the zero roots of a motion without
+    /// stiffness: that motion is split off, and the roots are exact for matrices within rounding of those given.
+    /// </summary>
     public double Uncertainty { get; }
 
     /// <summary>Whether this root decays, grows, lies on the axis, or cannot be told.</summary>
@@ -29,7 +32,7 @@ public sealed class SpectrumRoot
     public Frequency Frequency => Frequency.Of(Value.Imaginary);
 
     /// <summary>Damping ratio <c>ζ = −Re s/|s|</c>; <see langword="null"/> for a zero root.</summary>
-    public double? DampingRatio => Value == Complex.Zero ? null : -Value.Real / Complex.Abs(Value);
+    public double? DampingRatio => Value == Complex.Zero ? null : (0 - Value.Real) / Complex.Abs(Value);
 
     /// <summary>Logarithmic decrement <c>δ = 2πζ/√(1−ζ²)</c>; <see langword="null"/> for a root that does not oscillate.</summary>
     public double? LogarithmicDecrement => Value.Imaginary == 0 ? null : -2 * Math.PI * Value.Real / Math.Abs(Value.Imaginary);

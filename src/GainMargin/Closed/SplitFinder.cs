@@ -10,7 +10,7 @@ internal static class SplitFinder
     public static SymmetrySplit Run(ClosedLoop closed)
     {
         var model = new NormalisedModel(closed.Pencil);
-        var hat = model.Hat.At(closed.Gains);
+        var hat = model.ClosedHat(closed.Gains);
         double rate = model.Rate;
         var conservative = Symmetric(closed, model, closed.Stiffness, hat.Stiffness, rate * rate);
         var dissipative = Symmetric(closed, model, closed.Damping, hat.Damping, rate);
@@ -41,7 +41,7 @@ internal static class SplitFinder
         double whole = Dense.Norm(hat);
         var part = Dense.SymmetricPart(hat);
         var (values, vectors) = Dense.SymmetricEigen(part);
-        double rounding = Tolerances.Backward(n, whole);
+        double rounding = Tolerances.NullSpace(n, whole);
         var direction = model.EvenToPhysical(model.HatToEven([.. vectors.Column(0).Select(v => new Complex(v, 0))]));
         var definiteness = Classify(values, rounding);
         return new SymmetricPart(

@@ -18,7 +18,8 @@ public sealed class SymmetricPart : SplitPart
     public Definiteness Definiteness { get; }
 
     /// <summary>
-    /// Smallest eigenvalue against the mass matrix, <c>A x = λ M x</c>: for stiffness a squared frequency, for damping <c>2ζω</c>.
+    /// Smallest eigenvalue against the mass of the structure, <c>A x = λ M x</c>: for stiffness a squared frequency, for damping
+    /// <c>2ζω</c>.
     /// </summary>
     public double SmallestEigenvalue { get; }
 

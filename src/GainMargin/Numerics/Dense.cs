@@ -67,6 +67,25 @@ internal static class Dense
     /// <summary>Skew part, <c>(A − Aᵀ)/2</c>; exactly zero for a matrix that is symmetric bit for bit.</summary>
     public static Matrix<double> SkewPart(Matrix<double> a) => DenseMatrix.Create(a.RowCount, a.RowCount, (i, j) => (0.5 * a[i, j]) - (0.5 * a[j, i]));
 
+    /// <summary>Whether a matrix is symmetric bit for bit.</summary>
+    public static bool IsSymmetric(Matrix<double> a)
+    {
+        int n = a.RowCount;
+        double[] values = Columnwise(a);
+        for (int j = 0; j < n; j++)
+        {
+            for (int i = 0; i < j; i++)
+            {
+                if (values[(j * n) + i] != values[(i * n) + j])
+                {
+                    return false;
+                }
+            }
+        }
+
+        return true;
+    }
+
     /// <summary>Ascending eigenvalues and orthonormal eigenvectors of a symmetric matrix.</summary>
     public static (double[] Values, Matrix<double> Vectors) SymmetricEigen(Matrix<double> a)
     {
@@ -118,7 +137,7 @@ internal static class Dense
         return part;
     }
 
-    /// <summary>Solves <c>A X = B</c>, or returns <see langword="null"/> where <c>A</c> is singular to working precision.</summary>
+    /// <summary>Solves <c>A X = B</c>, or returns <see langword="null"/> where the solution is not finite.</summary>
     public static Matrix<double>? TrySolve(Matrix<double> a, Matrix<double> b)
     {
         if (a.RowCount == 0)
@@ -130,7 +149,7 @@ internal static class Dense
         return x.ForAll(double.IsFinite) ? x : null;
     }
 
-    /// <summary>Solves a square complex system, or returns <see langword="null"/> where it is singular to working precision.</summary>
+    /// <summary>Solves a square complex system, or returns <see langword="null"/> where the solution is not finite.</summary>
     public static Complex[]? TrySolve(Matrix<Complex> a, Complex[] b)
     {
         var x = a.LU().Solve(MathNet.Numerics.LinearAlgebra.Vector<Complex>.Build.Dense(b));
@@ -153,23 +172,29 @@ internal static class Dense
     /// <summary><c>L⁻¹ B</c> for a lower triangular <c>L</c>.</summary>
     public static Matrix<double> LowerSolve(Matrix<double> lower, Matrix<double> b)
     {
-        var x = Copy(b);
         int n = lower.RowCount;
-        for (int j = 0; j < b.ColumnCount; j++)
+        double[] factor = Columnwise(lower);
+        double[] x = b.ToColumnMajorArray();
+        for (int column = 0; column < b.ColumnCount; column++)
         {
-            for (int i = 0; i < n; i++)
+            var y = x.AsSpan(column * n, n);
+            for (int j = 0; j < n; j++)
             {
-                double sum = x[i, j];
-                for (int k = 0; k < i; k++)
+                double pivot = y[j] / factor[(j * n) + j];
+                y[j] = pivot;
+                if (pivot == 0)
                 {
-                    sum -= lower[i, k] * x[k, j];
+                    continue;
                 }
 
-                x[i, j] = sum / lower[i, i];
+                for (int i = j + 1; i < n; i++)
+                {
+                    y[i] -= factor[(j * n) + i] * pivot;
+                }
             }
         }
 
-        return x;
+        return new DenseMatrix(n, b.ColumnCount, x);
     }
 
     /// <summary><c>L⁻ᵀ v</c> for a lower triangular <c>L</c>.</summary>

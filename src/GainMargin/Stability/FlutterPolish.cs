@@ -30,12 +30,13 @@ internal static class FlutterPolish
             }
 
             (right, left) = (system.Right, system.Left);
+            var defect = -BorderedSystem.Inner(left, closed.Times(s, right));
             var bySlope = -BorderedSystem.Inner(left, closed.SlopeTimes(s, right));
             var byGain = -BorderedSystem.Inner(left, even.SlopeAt(gains, sweep.SlopesAt(gain)).Times(s, right));
             var alongAxis = Complex.ImaginaryOne * bySlope;
             double determinant = (alongAxis.Real * byGain.Imaginary) - (alongAxis.Imaginary * byGain.Real);
-            double dOmega = ((-system.Defect.Real * byGain.Imaginary) + (system.Defect.Imaginary * byGain.Real)) / determinant;
-            double dGain = ((-alongAxis.Real * system.Defect.Imaginary) + (alongAxis.Imaginary * system.Defect.Real)) / determinant;
+            double dOmega = ((-defect.Real * byGain.Imaginary) + (defect.Imaginary * byGain.Real)) / determinant;
+            double dGain = ((-alongAxis.Real * defect.Imaginary) + (alongAxis.Imaginary * defect.Real)) / determinant;
             var slope = -byGain / bySlope;
             double rounding = BorderedSystem.Rounding(even.ModuliAt(gains), omega, left, right) / Complex.Abs(bySlope) / Math.Abs(slope.Real);
             if (!double.IsFinite(dOmega) || !double.IsFinite(dGain) || !double.IsFinite(rounding))

@@ -224,7 +224,7 @@ internal sealed class SingularGains
             }
 
             var slope = -BorderedSystem.Inner(system.Left, Matrices.SlopeAt(gains, _sweep.SlopesAt(value)).Times(Complex.Zero, system.Right));
-            double change = -(system.Defect / slope).Real;
+            double change = (BorderedSystem.Inner(system.Left, closed.Times(Complex.Zero, system.Right)) / slope).Real;
             double rounding = BorderedSystem.Rounding(Matrices.ModuliAt(gains), 0, system.Left, system.Right) / Complex.Abs(slope);
             if (!double.IsFinite(change) || !double.IsFinite(rounding) || Math.Abs(value + change - start) > Math.Max(100 * own, 1e-3 * Math.Abs(start)))
             {

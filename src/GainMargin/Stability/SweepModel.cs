@@ -46,7 +46,7 @@ internal sealed class SweepModel
     public StabilityVerdict JudgeAt(double value)
     {
         double[] gains = GainsAt(value);
-        var count = Counted(value, () => RootSet.Polished(Model, gains, RigidMotion.Of(Model.Hat.At(gains)))).Count;
+        var count = Counted(value, () => RootSet.Polished(Model, gains, RigidMotion.Of(Model, gains))).Count;
         return count.Verdict == StabilityVerdict.Undecided ? SpectrumFinder.Decide(count, FactsAt(value)) : count.Verdict;
     }
 
@@ -128,23 +128,33 @@ internal sealed class SweepModel
     {
         bool[] moves = Array.ConvertAll(_polynomials, p => p.Length > 1);
         double[] held = [.. _polynomials.Select((p, k) => moves[k] ? 0 : p[0])];
-        var closed = Model.Hat.At(held);
-        return RigidMotion.Larger(
-            RigidMotion.Find(
-                Stacked(closed.Stiffness, Model.Hat.Sense, k => moves[k] && Model.Hat.Ratios[k].Position != 0),
-                Stacked(closed.Damping, Model.Hat.Sense, k => moves[k] && Model.Hat.Ratios[k].Rate != 0), false),
-            RigidMotion.Find(
-                Stacked(closed.Stiffness.Transpose(), Model.Hat.Drive, k => moves[k] && Model.Hat.Ratios[k].Position != 0),
-                Stacked(closed.Damping.Transpose(), Model.Hat.Drive, k => moves[k] && Model.Hat.Ratios[k].Rate != 0), true));
+        var hat = Model.ClosedHat(held);
+        var even = Model.Even.At(held).Stiffness;
+        var moduli = Model.Even.ModuliAt(held).Stiffness;
+        bool Positions(int k) => moves[k] && Model.Hat.Ratios[k].Position != 0;
+        bool Rates(int k) => moves[k] && Model.Hat.Ratios[k].Rate != 0;
+
+        RigidMotion Side(bool onLeft)
+        {
+            Matrix<double> Of(Matrix<double> a) => onLeft ? a.Transpose() : a;
+            Matrix<double> Patterns(LoopedPencil pencil) => onLeft ? pencil.Drive : pencil.Sense;
+            var rows = Stacked(Of(even), Patterns(Model.Even), Positions);
+            var rowModuli = Stacked(Of(moduli), Patterns(Model.Even), Positions).PointwiseAbs();
+            return RigidMotion.Find(
+                Stacked(Of(hat.Stiffness), Patterns(Model.Hat), Positions), Stacked(Of(hat.Damping), Patterns(Model.Hat), Rates), onLeft,
+                basis => Model.IsAnnihilated(rows, rowModuli, basis));
+        }
+
+        return RigidMotion.Larger(Side(onLeft: false), Side(onLeft: true));
     }
 
     /// <summary>The held matrix with the patterns of the moving loops below it, each of the size of the matrix.</summary>
-    private Matrix<double> Stacked(Matrix<double> held, Matrix<double> patterns, Func<int, bool> counts)
+    private static Matrix<double> Stacked(Matrix<double> held, Matrix<double> patterns, Func<int, bool> counts)
     {
         double size = Dense.Norm(held);
         size = size > 0 ? size : 1;
         var stacked = held;
-        for (int k = 0; k < Model.Hat.LoopCount; k++)
+        for (int k = 0; k < patterns.ColumnCount; k++)
         {
             var row = patterns.Column(k);
             double length = row.L2Norm();

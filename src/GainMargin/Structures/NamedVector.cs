@@ -52,9 +52,9 @@ public sealed class NamedVector
         }
 
         var scaled = ImmutableArray.CreateBuilder<Complex>(values.Length);
-        foreach (var value in values)
+        for (int i = 0; i < values.Length; i++)
         {
-            scaled.Add(largest == 0 ? value : value / values[pivot]);
+            scaled.Add(largest == 0 ? values[i] : i == pivot ? Complex.One : values[i] / values[pivot]);
         }
 
         return new NamedVector(dofs, scaled.MoveToImmutable());
