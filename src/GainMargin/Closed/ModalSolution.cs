@@ -11,6 +11,9 @@ namespace GainMargin;
 /// </summary>
 internal sealed class ModalSolution
 {
+    /// <summary>Stage of the failure at a gain where a root is at infinity.</summary>
+    public const string SingularMass = "closed-loop mass";
+
     private readonly LoopedPencil _model;
     private readonly QuadraticPencil _closed;
 
@@ -48,7 +51,7 @@ internal sealed class ModalSolution
         var inverseMass = massFeedback ? Dense.TrySolve(Side(closed.Mass), Dense.Identity(n)) : null;
         if (massFeedback && inverseMass is null)
         {
-            throw new NumericalFailureException("closed-loop mass", "The closed-loop mass matrix is singular at this gain.");
+            throw new NumericalFailureException(SingularMass, "The closed-loop mass matrix is singular at this gain.");
         }
 
         var k = inverseMass is null ? Side(closed.Stiffness) : inverseMass * Side(closed.Stiffness);

@@ -5,6 +5,8 @@ namespace GainMargin;
 /// <summary>All roots at one set of gains with what is known of each, in normalised time; zero roots of rigid motion first.</summary>
 internal sealed class RootSet
 {
+    private const double FirstOrder = 100;
+
     private RootSet(ModalSolution solution, RigidMotion rigid)
     {
         Solution = solution;
@@ -41,22 +43,38 @@ internal sealed class RootSet
 
     /// <summary>Roots whose side of the axis the decomposition leaves open are polished on the evenly scaled matrices.</summary>
     public static RootSet Polished(NormalisedModel model, ReadOnlySpan<double> gains, RigidMotion rigid)
+        => Polished(model, gains, rigid, int.MaxValue);
+
+    /// <summary>
+    /// The same, unless more than <paramref name="most"/> pairs are open: a structure without damping has all its pairs on the
+    /// axis, and polishing tells nothing.
+    /// </summary>
+    public static RootSet Polished(NormalisedModel model, ReadOnlySpan<double> gains, RigidMotion rigid, int most)
     {
         var roots = Raw(model, gains, rigid);
-        var closed = model.Even.At(gains);
-        QuadraticPencil? moduli = null;
-        for (int i = 0; i < roots.Values.Length; i++)
+        int[] open = [.. Enumerable.Range(0, roots.Values.Length)
+            .Where(i => roots.Values[i].Imaginary >= 0 && roots.VerdictOf(i) == StabilityVerdict.Undecided)];
+        if (open.Length == 0 || open.Length > most)
         {
-            bool conjugateFollows = roots.Values[i].Imaginary > 0;
-            if (roots.VerdictOf(i) == StabilityVerdict.Undecided && roots.IsSeparate(i))
-            {
-                moduli ??= model.Even.ModuliAt(gains);
-                roots.Improve(i, conjugateFollows, RootPolish.Run(
-                    closed, moduli, roots.Values[i],
-                    model.HatToEven(roots.Solution.Right[i]), model.HatToEven(roots.Solution.Left[i])));
-            }
+            return roots;
+        }
 
-            i += conjugateFollows ? 1 : 0;
+        var closed = model.Even.At(gains);
+        var moduli = model.Even.ModuliAt(gains);
+        var polished = Array.ConvertAll(open, i => RootPolish.Run(
+            closed, moduli, roots.Values[i], model.HatToEven(roots.Solution.Right[i]), model.HatToEven(roots.Solution.Left[i])));
+        var accepted = new List<(int, PolishedRoot)>();
+        for (int k = 0; k < open.Length; k++)
+        {
+            if (polished[k] is { } root && roots.Accepts(open[k], root) && Enumerable.Range(0, open.Length).All(j => j == k || IsApart(root, polished[j])))
+            {
+                accepted.Add((open[k], root));
+            }
+        }
+
+        foreach (var (i, root) in accepted)
+        {
+            roots.Improve(i, root);
         }
 
         return roots;
@@ -67,31 +85,26 @@ internal sealed class RootSet
         : Values[i].Real < -Uncertainty[i] ? StabilityVerdict.Stable
         : StabilityVerdict.Undecided;
 
-    private bool IsSeparate(int i)
+    /// <summary>
+    /// A first-order bound holds only where it is small against the distance to the next root: the members of a defective
+    /// cluster are polished to values of their own, each with a bound of the size of the cluster.
+    /// </summary>
+    private static bool IsApart(PolishedRoot root, PolishedRoot? other)
+        => other is not null && Complex.Abs(root.Value - other.Value) > FirstOrder * (root.Uncertainty + other.Uncertainty);
+
+    /// <summary>
+    /// A polished root must lie where the decomposition put it, know itself better, and be neither its own conjugate nor a
+    /// zero root that was split off.
+    /// </summary>
+    private bool Accepts(int i, PolishedRoot polished)
+        => polished.Uncertainty < Uncertainty[i]
+            && Complex.Abs(polished.Value - Values[i]) <= 2 * Uncertainty[i]
+            && (Values[i].Imaginary == 0 || polished.Value.Imaginary > FirstOrder * polished.Uncertainty)
+            && (Rigid.ZeroRoots == 0 || Complex.Abs(polished.Value) > polished.Uncertainty);
+
+    private void Improve(int i, PolishedRoot polished)
     {
-        if (Rigid.ZeroRoots > 0 && Complex.Abs(Values[i]) <= Uncertainty[i])
-        {
-            return false;
-        }
-
-        for (int j = 0; j < Values.Length; j++)
-        {
-            if (j != i && Complex.Abs(Values[i] - Values[j]) <= Uncertainty[i] + Uncertainty[j])
-            {
-                return false;
-            }
-        }
-
-        return true;
-    }
-
-    private void Improve(int i, bool conjugateFollows, PolishedRoot? polished)
-    {
-        if (polished is null || polished.Uncertainty >= Uncertainty[i] || Complex.Abs(polished.Value - Values[i]) > 2 * Uncertainty[i])
-        {
-            return;
-        }
-
+        bool conjugateFollows = Values[i].Imaginary > 0;
         Values[i] = polished.Value;
         Uncertainty[i] = polished.Uncertainty;
         if (conjugateFollows)

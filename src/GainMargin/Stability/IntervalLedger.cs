@@ -56,11 +56,13 @@ internal sealed class IntervalLedger
             var upper = i == pieces.Count - 1 ? atTo : AtCut(piece.To, piece, pieces[i + 1]);
             intervals.Add(new GainInterval(
                 piece.From, piece.To, lower, piece.Inside, upper, piece.Count,
-                piece.IsOpen ? null : LeastDamped(piece.From, piece.To, lower != piece.Inside, upper != piece.Inside)));
+                piece.IsOpen ? null : LeastDamped(piece.From, piece.To, i > 0 || IsApart(lower, piece), i < pieces.Count - 1 || IsApart(upper, piece))));
         }
 
         Intervals = intervals.ToImmutable();
     }
+
+    private static bool IsApart(StabilityVerdict end, Piece piece) => end != piece.Inside || end == StabilityVerdict.Undecided;
 
     private List<Piece> Pieces()
     {

@@ -7,6 +7,9 @@ namespace GainMargin;
 /// <summary>A path made ready for sampling: normalised once, permanent rigid motion found once, decompositions counted.</summary>
 internal sealed class SweepModel
 {
+    /// <summary>Most pairs polished in one sample.</summary>
+    private const int MostPolished = 4;
+
     private readonly double[][] _polynomials;
     private readonly CancellationToken _cancellation;
 
@@ -37,17 +40,26 @@ internal sealed class SweepModel
     public SweepSample SampleAt(double value)
     {
         double[] gains = GainsAt(value);
-        var roots = Counted(value, () => RootSet.Raw(Model, gains, Permanent));
+        var roots = Counted(value, () => RootSet.Polished(Model, gains, Permanent, MostPolished));
         return new SweepSample(value, roots, roots.Solution.Slopes(gains, SlopesAt(value)));
     }
 
     /// <summary>The verdict at one value: by count with polished roots, or by a theorem where the count leaves it open.</summary>
-    /// <remarks>Rigid motion that is free only at this value is split off as well.</remarks>
+    /// <remarks>
+    /// Rigid motion that is free only at this value is split off as well. Where a root is at infinity nothing is claimed.
+    /// </remarks>
     public StabilityVerdict JudgeAt(double value)
     {
         double[] gains = GainsAt(value);
-        var count = Counted(value, () => RootSet.Polished(Model, gains, RigidMotion.Of(Model, gains))).Count;
-        return count.Verdict == StabilityVerdict.Undecided ? SpectrumFinder.Decide(count, FactsAt(value)) : count.Verdict;
+        try
+        {
+            var count = Counted(value, () => RootSet.Polished(Model, gains, RigidMotion.Of(Model, gains))).Count;
+            return count.Verdict == StabilityVerdict.Undecided ? SpectrumFinder.Decide(count, FactsAt(value)) : count.Verdict;
+        }
+        catch (NumericalFailureException failure) when (failure.Stage == ModalSolution.SingularMass)
+        {
+            return StabilityVerdict.Undecided;
+        }
     }
 
     /// <summary>Root count at one value, polished; only the permanent rigid motion is split off.</summary>

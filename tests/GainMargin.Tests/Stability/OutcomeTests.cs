@@ -55,6 +55,17 @@ public sealed class OutcomeTests
         Assert.Contains(boundary.Cautions, c => c.Kind == CautionKind.ThroughInfinity);
     }
 
+    // (1 + g)s² + 0.1s + 1 screened from the very gain at which the mass vanishes.
+    [Fact]
+    public void Run_RangeEndsWhereARootIsAtInfinity_NothingClaimedAtThatEnd()
+    {
+        var boundary = GainSweep.Run(Boundaries.Path(Boundaries.One(1, 0.1, 1), Boundaries.Loop("g", "x", "x", new() { Acceleration = 1 }, 0.5), -1, 1));
+
+        Assert.Empty(boundary.Onsets);
+        Assert.Equal(StabilityVerdict.Undecided, boundary.Intervals[0].AtFrom);
+        Assert.Equal(StabilityVerdict.Stable, boundary.Intervals[^1].Inside);
+    }
+
     [Fact]
     public void Run_DampingWithDoubleZero_TouchesAndTurnsBack()
     {
