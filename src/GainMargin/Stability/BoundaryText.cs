@@ -16,7 +16,8 @@ internal static class BoundaryText
         AppendEnd(text, boundary.From, boundary.Unit, boundary.Intervals[0].AtFrom, boundary.Intervals[0].Inside);
         foreach (var interval in boundary.Intervals)
         {
-            for (; next < boundary.Onsets.Length && boundary.Onsets[next].Gain <= interval.From; next++)
+            double middle = 0.5 * (interval.From + interval.To);
+            for (; next < boundary.Onsets.Length && boundary.Onsets[next].Gain < middle; next++)
             {
                 text.Append("  ").Append(Of(boundary.Onsets[next], boundary.Units, boundary.Unit)).Append('\n');
             }

@@ -30,10 +30,12 @@ internal sealed class FlutterSearch
 
     private bool BudgetSpent { get; set; }
 
-    public void Run(double from, double to)
+    /// <summary>Searches one piece and returns the samples at its ends.</summary>
+    public (SweepSample First, SweepSample Last) Run(double from, double to)
     {
         _assessment = new StepAssessment(_sweep, from, to);
-        var left = _sweep.SampleAt(from);
+        var first = _sweep.SampleAt(from);
+        var left = first;
         double[] grid = SweepGrid.Between(from, to, _sweep.Path.Range.Width, _options);
         for (int i = 1; i < grid.Length; i++)
         {
@@ -41,7 +43,7 @@ internal sealed class FlutterSearch
             if (BudgetSpent)
             {
                 Open.Add(new GainStretch(left.Gain, to));
-                return;
+                return (first, _sweep.SampleAt(to));
             }
 
             bool last = i == grid.Length - 1;
@@ -49,6 +51,39 @@ internal sealed class FlutterSearch
             Resolve(left, right);
             left = right;
             _settled(left.Gain);
+        }
+
+        return (first, left);
+    }
+
+    /// <summary>
+    /// Crosses the narrow gap around a divergence or a loss through infinity: pairs that change sides inside it flutter at
+    /// the very gain at which another root diverges.
+    /// </summary>
+    public void Bridge(SweepSample below, SweepSample above)
+    {
+        int[] match = BranchMatch.Between(below, above);
+        double middle = 0.5 * (below.Gain + above.Gain);
+        for (int i = 0; i < match.Length; i++)
+        {
+            var a = below.Values[i];
+            var b = above.Values[match[i]];
+            if (a.Imaginary <= 0 || b.Imaginary <= 0 || a.Real * b.Real >= 0 || below.IsOnAxis(i) || above.IsOnAxis(match[i]))
+            {
+                continue;
+            }
+
+            var crossing = FlutterPolish.Run(
+                _sweep, middle, 0.5 * (a.Imaginary + b.Imaginary),
+                _sweep.Model.HatToEven(below.Roots.Solution.Right[i]), _sweep.Model.HatToEven(below.Roots.Solution.Left[i]), below.Gain, above.Gain);
+            if (crossing is null)
+            {
+                Open.Add(new GainStretch(below.Gain, above.Gain));
+            }
+            else
+            {
+                Crossings.Add(crossing);
+            }
         }
     }
 

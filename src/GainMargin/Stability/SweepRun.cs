@@ -78,12 +78,13 @@ internal sealed class SweepRun
         var range = _path.Range;
         var barriers = divergences.Found.Concat(infinities.Found).OrderBy(g => g.Gain).ToList();
         double from = range.From;
+        SweepSample? before = null;
         foreach (var barrier in barriers)
         {
             double inset = Math.Max(Inset * range.Width, 4 * barrier.Uncertainty);
             if (barrier.Gain - inset > from)
             {
-                _search.Run(from, barrier.Gain - inset);
+                before = Piece(before, from, barrier.Gain - inset);
             }
 
             from = Math.Max(from, barrier.Gain + inset);
@@ -92,8 +93,20 @@ internal sealed class SweepRun
         if (from < range.To)
         {
             bool endsOnBarrier = barriers.Count > 0 && barriers[^1].Gain >= range.To;
-            _search.Run(from, endsOnBarrier ? range.To - (Inset * range.Width) : range.To);
+            Piece(before, from, endsOnBarrier ? range.To - (Inset * range.Width) : range.To);
         }
+    }
+
+    /// <summary>Searches a piece, and before it the gap that a divergence left between it and the piece below.</summary>
+    private SweepSample Piece(SweepSample? before, double from, double to)
+    {
+        var (first, last) = _search.Run(from, to);
+        if (before is not null)
+        {
+            _search.Bridge(before, first);
+        }
+
+        return last;
     }
 
     private void Settled(double gain) => Report("sweep", (gain - _path.Range.From) / _path.Range.Width);

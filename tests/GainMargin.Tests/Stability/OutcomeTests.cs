@@ -55,6 +55,25 @@ public sealed class OutcomeTests
         Assert.Contains(boundary.Cautions, c => c.Kind == CautionKind.ThroughInfinity);
     }
 
+    /// <summary>
+    /// Two masses on their own: g takes the stiffness of the first and the damping of the second to zero at the same gain.
+    /// </summary>
+    [Fact]
+    public void Run_FlutterAtTheGainOfADivergence_BothReported()
+    {
+        var structure = ElasticStructure.FromRowMajor(["x", "y"], [1, 0, 0, 1], [0.1, 0, 0, 0.5], [0.5, 0, 0, 9]);
+        var law = ControlLaw.Of(
+            Boundaries.Loop("k", "x", "x", new() { Position = -1 }, 1), Boundaries.Loop("d", "y", "y", new() { Rate = -1 }, 1));
+        var boundary = GainSweep.Run(GainPath.CommonFactor(ClosedLoop.Create(structure, law), GainRange.Between(0.1, 2)));
+
+        Assert.Equal([OnsetKind.Divergence, OnsetKind.Flutter], boundary.Onsets.Select(o => o.Kind).Order(Comparer<OnsetKind>.Create((a, b) => b.CompareTo(a))));
+        Assert.All(boundary.Onsets, o => Assert.Equal(0.5, o.Gain, 1e-12));
+        Assert.All(boundary.Onsets, o => Assert.Equal((0, 3), (o.Below.Growing, o.Above.Growing)));
+        string text = boundary.ToString();
+        Assert.Contains(": divergence,", text, StringComparison.Ordinal);
+        Assert.Contains(": flutter at 3 rad", text, StringComparison.Ordinal);
+    }
+
     // (1 + g)s² + 0.1s + 1 screened from the very gain at which the mass vanishes.
     [Fact]
     public void Run_RangeEndsWhereARootIsAtInfinity_NothingClaimedAtThatEnd()
