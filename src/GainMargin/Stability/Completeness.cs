@@ -33,7 +33,7 @@ public sealed class Completeness
 
     /// <summary>
     /// Widest step between two samples: an excursion into instability and back that is narrower can be missed where the
-    /// slopes at both samples give no sign of it.
+    /// slopes at both samples give no sign of it. Zero where flutter is complete.
     /// </summary>
     public double WidestStep { get; }
 
@@ -42,6 +42,10 @@ public sealed class Completeness
 
     /// <summary>The coverage in words.</summary>
     public override string ToString()
-        => $"flutter {Flutter.ToString().ToLowerInvariant()} (an excursion narrower than {WidestStep.ToString("G3", CultureInfo.InvariantCulture)} can be missed), " +
-           $"divergence {Divergence.ToString().ToLowerInvariant()}; {Decompositions.ToString(CultureInfo.InvariantCulture)} decompositions";
+    {
+        string flutter = Flutter == Coverage.Complete
+            ? "complete, for the model as computed and up to rounding"
+            : $"sampled (an excursion narrower than {WidestStep.ToString("G3", CultureInfo.InvariantCulture)} can be missed)";
+        return $"flutter {flutter}; divergence {Divergence.ToString().ToLowerInvariant()}; {Decompositions.ToString(CultureInfo.InvariantCulture)} decompositions";
+    }
 }

@@ -8,6 +8,7 @@ internal sealed class IntervalLedger
 {
     private const double BesideOnset = 0.05;
     private const int RefiningSteps = 6;
+    private const int FewestSamples = 3;
 
     private readonly SweepModel _sweep;
     private readonly ImmutableArray<SweepSample> _samples;
@@ -186,6 +187,11 @@ internal sealed class IntervalLedger
         double low = from + (insetFrom ? BesideOnset * (to - from) : 0);
         double high = to - (insetTo ? BesideOnset * (to - from) : 0);
         var approaches = _samples.Where(s => s.Gain > low && s.Gain < high).Select(s => Worst(s.Gain, s.Roots)).ToList();
+        if (approaches.Count < FewestSamples)
+        {
+            approaches = [.. Enumerable.Range(1, FewestSamples).Select(k => At(low + ((high - low) * k / (FewestSamples + 1))))];
+        }
+
         approaches.Insert(0, At(low));
         approaches.Add(At(high));
         int least = 0;

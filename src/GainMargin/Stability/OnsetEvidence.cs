@@ -4,15 +4,6 @@ using MathNet.Numerics.LinearAlgebra;
 
 namespace GainMargin;
 
-/// <summary>An onset whose root counts on both sides are not known yet.</summary>
-internal sealed record OnsetDraft(
-    double Gain, double Uncertainty, OnsetKind Kind, Frequency Frequency, double? Slope, double BackwardError,
-    NamedVector Right, NamedVector Left, EnergyBalance? Energy)
-{
-    public bool IsTogetherWith(OnsetDraft other)
-        => Math.Abs(Gain - other.Gain) <= (2 * (Uncertainty + other.Uncertainty)) + (4 * Tolerances.Epsilon * Math.Abs(Gain));
-}
-
 /// <summary>Turns located onsets into drafts with modes, slope, backward error and energy balance in the units of the model.</summary>
 internal sealed class OnsetEvidence(SweepModel sweep)
 {

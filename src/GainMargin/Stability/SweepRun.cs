@@ -33,10 +33,9 @@ internal sealed class SweepRun
         var evidence = new OnsetEvidence(_sweep);
         var found = _search.Crossings.Select(evidence.OfFlutter)
             .Concat(divergences.Found.Where(IsInside).Select(evidence.OfDivergence))
-            .Concat(infinities.Found.Where(IsInside).Select(evidence.OfInfinity))
-            .OrderBy(o => o.Gain).ThenBy(o => o.Frequency).ToList();
+            .Concat(infinities.Found.Where(IsInside).Select(evidence.OfInfinity));
         var stretches = GainStretch.Merged(_search.Open);
-        var ledger = new IntervalLedger(_sweep, SamplesOf(_search.Steps), WithoutRepeats(found), stretches, GainStretch.Merged(_search.OnAxis));
+        var ledger = new IntervalLedger(_sweep, SamplesOf(_search.Steps), OnsetDraft.WithoutRepeats(found), stretches, GainStretch.Merged(_search.OnAxis));
         ledger.Run();
         Report("done", 1);
 
@@ -52,23 +51,6 @@ internal sealed class SweepRun
 
     private static ImmutableArray<SweepSample> SamplesOf(List<SweepStep> steps)
         => [.. steps.SelectMany(s => new[] { s.Left, s.Right }).DistinctBy(s => s.Gain).OrderBy(s => s.Gain)];
-
-    /// <summary>Two branches of equal frequency that cross together, as in a structure of two equal halves, are one onset.</summary>
-    private static List<OnsetDraft> WithoutRepeats(List<OnsetDraft> found)
-    {
-        var kept = new List<OnsetDraft>();
-        foreach (var onset in found)
-        {
-            bool repeats = kept.Count > 0 && kept[^1].Kind == onset.Kind && kept[^1].IsTogetherWith(onset)
-                && Math.Abs(kept[^1].Frequency.Radians - onset.Frequency.Radians) <= 1e-9 * onset.Frequency.Radians;
-            if (!repeats)
-            {
-                kept.Add(onset);
-            }
-        }
-
-        return kept;
-    }
 
     private bool IsInside(SingularGain gain)
         => gain.Gain - gain.Uncertainty > _path.Range.From && gain.Gain + gain.Uncertainty < _path.Range.To;

@@ -18,7 +18,7 @@ public sealed class ExactAgreementTests
     [Fact]
     public void Run_RandomLoopsUpToSixStates_AgreesWithExactArithmetic()
     {
-        int seeds = Seeds.Count(1500);
+        int seeds = Seeds.Count(1000);
         int compared = 0;
         int missed = 0;
         int lossless = 0;
