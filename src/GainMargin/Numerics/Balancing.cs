@@ -57,7 +57,7 @@ internal static class Balancing
             }
         }
 
-        if (column == 0 || row == 0)
+        if (column == 0 || row == 0 || !double.IsFinite(column + row))
         {
             return 1;
         }

@@ -1,4 +1,5 @@
 using System.Numerics;
+using MathNet.Numerics;
 using MathNet.Numerics.LinearAlgebra;
 using MathNet.Numerics.LinearAlgebra.Double;
 
@@ -67,6 +68,26 @@ internal static class Dense
     /// <summary>Skew part, <c>(A − Aᵀ)/2</c>; exactly zero for a matrix that is symmetric bit for bit.</summary>
     public static Matrix<double> SkewPart(Matrix<double> a) => DenseMatrix.Create(a.RowCount, a.RowCount, (i, j) => (0.5 * a[i, j]) - (0.5 * a[j, i]));
 
+    /// <summary>The matrix over a power of two of its own size: iterations square entries, which must neither overflow nor vanish.</summary>
+    private static (Matrix<double> Scaled, int Exponent) ToUnitSize(Matrix<double> a)
+    {
+        double norm = Norm(a);
+        int exponent = norm > 0 && double.IsFinite(norm) ? Math.ILogB(norm) : 0;
+        return (a.Map(x => Math.ScaleB(x, -exponent)), exponent);
+    }
+
+    private static T Converging<T>(string stage, Func<T> factorise)
+    {
+        try
+        {
+            return factorise();
+        }
+        catch (NonConvergenceException failure)
+        {
+            throw new NumericalFailureException(stage, $"The iteration for {stage} did not converge.", innerException: failure);
+        }
+    }
+
     /// <summary>Whether a matrix is symmetric bit for bit.</summary>
     public static bool IsSymmetric(Matrix<double> a)
     {
@@ -94,8 +115,9 @@ internal static class Dense
             return (new double[a.RowCount], Identity(a.RowCount));
         }
 
-        var evd = SymmetricPart(a).Evd(Symmetricity.Symmetric);
-        double[] values = [.. evd.EigenValues.Select(v => v.Real)];
+        var (scaled, exponent) = ToUnitSize(a);
+        var evd = Converging("symmetric eigenvalues", () => SymmetricPart(scaled).Evd(Symmetricity.Symmetric));
+        double[] values = [.. evd.EigenValues.Select(v => Math.ScaleB(v.Real, exponent))];
         int[] order = [.. Enumerable.Range(0, values.Length).OrderBy(i => values[i])];
         return ([.. order.Select(i => values[i])], DenseMatrix.OfColumnVectors(order.Select(i => evd.EigenVectors.Column(i))));
     }
@@ -112,8 +134,9 @@ internal static class Dense
             return (Identity(n), Zero(n, 0));
         }
 
-        var svd = a.Svd();
-        int rank = svd.S.Count(s => s > tolerance);
+        var (scaled, exponent) = ToUnitSize(a);
+        var svd = Converging("singular values", () => scaled.Svd());
+        int rank = svd.S.Count(s => Math.ScaleB(s, exponent) > tolerance);
         var v = svd.VT.Transpose();
         return (Columns(v, rank, n), Columns(v, 0, rank));
     }
@@ -122,7 +145,7 @@ internal static class Dense
     public static (Complex[] Right, Complex[] Left) SmallestSingularVectors(Matrix<double> a)
     {
         int last = a.RowCount - 1;
-        var svd = a.Svd();
+        var svd = Converging("singular values", () => ToUnitSize(a).Scaled.Svd());
         return ([.. svd.VT.Row(last).Select(x => new Complex(x, 0))], [.. svd.U.Column(last).Select(x => new Complex(x, 0))]);
     }
 

@@ -15,6 +15,8 @@ namespace GainMargin.Numerics;
 internal static class RealEigen
 {
     private const int Seed = 20261201;
+    private const double SmallestNorm = 1e-100;
+    private const double GreatestNorm = 1e100;
 
     public static EigenSystem Solve(Matrix<double> a)
     {
@@ -28,6 +30,18 @@ internal static class RealEigen
         if (norm == 0)
         {
             return OfZero(n);
+        }
+
+        if (norm is < SmallestNorm or > GreatestNorm)
+        {
+            // The iteration squares entries: take sizes near the ends of the range out of it.
+            int exponent = Math.ILogB(norm);
+            var middle = Solve(a.Map(x => Math.ScaleB(x, -exponent)));
+            return middle with
+            {
+                Values = Array.ConvertAll(middle.Values, v => new Complex(Math.ScaleB(v.Real, exponent), Math.ScaleB(v.Imaginary, exponent))),
+                Uncertainty = Array.ConvertAll(middle.Uncertainty, u => Math.ScaleB(u, exponent)),
+            };
         }
 
         var (balanced, scale) = Balancing.Balance(a);

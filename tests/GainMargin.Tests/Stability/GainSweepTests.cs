@@ -139,6 +139,20 @@ public sealed class GainSweepTests
         Assert.Equal(0.1 * size, onset.Gain, 1e-13 * size);
     }
 
+    /// <summary>Entries whose squares overflow: an answer or a refusal, and neither a hang nor a foreign exception.</summary>
+    [Theory]
+    [InlineData(1e100)]
+    [InlineData(1e160)]
+    [InlineData(1e250)]
+    public void Run_GainsWhoseSquaresOverflow_StillUnstable(double reach)
+    {
+        var structure = ElasticStructure.FromRowMajor(["x", "y"], [1, 0, 0, 1], [0.01, -0.01, -0.01, 0.01], [1, -1, -1, 1]);
+        var boundary = GainSweep.Run(Boundaries.Path(structure, Boundaries.Loop("g", "y", "x", new() { Position = 1 }, 0.1), 0, reach));
+
+        Assert.All(boundary.Intervals, i => Assert.NotEqual(StabilityVerdict.Stable, i.Inside));
+        Assert.Equal(StabilityVerdict.Unstable, boundary.VerdictAt(0.7 * reach));
+    }
+
     [Fact]
     public void TryGetNearest_TwoOnsets_NearerByRatioOnTheSameSide()
     {
