@@ -21,23 +21,11 @@ public sealed class ExactAgreementTests
         int seeds = Seeds.Count(1000);
         int compared = 0;
         int missed = 0;
-        int lossless = 0;
+        int solvable = 0;
         var complaints = new StringBuilder();
-        for (int seed = 1; seed <= seeds; seed++)
+        foreach (var (seed, test, exact, expected) in ExactCase.Solvable(seeds))
         {
-            var test = ExactCase.Random(seed);
-            var exact = test.Exact();
-            IReadOnlyList<ExactOnset> expected;
-            try
-            {
-                expected = exact.Onsets(test.Range.From, test.Range.To);
-            }
-            catch (NotSupportedException)
-            {
-                lossless++;
-                continue;
-            }
-
+            solvable++;
             var boundary = GainSweep.Run(test.Path());
             compared += expected.Count;
             var unreported = expected.Where(e => !boundary.Onsets.Any(o => IsSame(test, o.Gain, e.Gain))).ToList();
@@ -58,7 +46,7 @@ public sealed class ExactAgreementTests
         Assert.True(complaints.Length == 0, complaints.ToString());
         Assert.True(compared > seeds / 2, $"only {compared} onsets were compared");
         Assert.True(missed <= MissedShare * compared, $"{missed} of {compared} onsets were missed");
-        Assert.True(lossless < seeds / 10, $"{lossless} cases were left out");
+        Assert.True(solvable > 0.9 * seeds, $"only {solvable} cases could be solved exactly");
     }
 
     private static bool IsSame(ExactCase test, double found, double expected)

@@ -39,6 +39,30 @@ internal sealed record ExactCase(int Order, double[] Mass, double[] Damping, dou
         return new ExactCase(n, mass, damping, stiffness, drive, sense, ratios, GainRange.Between(-reach * 0.9375, reach));
     }
 
+    /// <summary>The cases of the first seeds that exact arithmetic can screen: those with some damping.</summary>
+    public static IEnumerable<(int Seed, ExactCase Test, ExactScreening Exact, IReadOnlyList<ExactOnset> Expected)> Solvable(int seeds)
+    {
+        for (int seed = 1; seed <= seeds; seed++)
+        {
+            var test = Random(seed);
+            var exact = test.Exact();
+            IReadOnlyList<ExactOnset>? expected = null;
+            try
+            {
+                expected = exact.Onsets(test.Range.From, test.Range.To);
+            }
+            catch (NotSupportedException)
+            {
+                // Roots symmetric about the origin at every gain.
+            }
+
+            if (expected is not null)
+            {
+                yield return (seed, test, exact, expected);
+            }
+        }
+    }
+
     public ExactScreening Exact() => new(
         Order, Mass, Outer(Ratios.Acceleration), Damping, Outer(Ratios.Rate), Stiffness, Outer(Ratios.Position));
 
