@@ -25,7 +25,7 @@ internal sealed class OneLoopRun(GainPath path, OnsetOptions options, IProgress<
         var divergences = SingularGains.Divergences(_sweep);
         var infinities = SingularGains.ThroughInfinity(_sweep);
         var isolator = new OnsetIsolator(terms, Math.Max(Math.Abs(range.From - terms.BaseValue), Math.Abs(range.To - terms.BaseValue)));
-        isolator.Run();
+        isolator.Run(cancellation);
         if (!isolator.IsComplete || !divergences.IsRegular || !infinities.IsRegular)
         {
             return null;

@@ -40,7 +40,7 @@ internal sealed class OnsetIsolator
     /// <summary>Whether the search covered all frequencies.</summary>
     public bool IsComplete { get; private set; }
 
-    public void Run()
+    public void Run(CancellationToken cancellation)
     {
         if (_terms.Count == 0 || End() is not { } end)
         {
@@ -58,6 +58,7 @@ internal sealed class OnsetIsolator
         {
             double origin = _terms.Center[owners[i]];
             double low = i == 0 ? -origin : 0.5 * (_terms.Center[owners[i - 1]] - origin);
+            cancellation.ThrowIfCancellationRequested();
             double high = i == owners.Length - 1 ? end - origin : 0.5 * (_terms.Center[owners[i + 1]] - origin);
             Search(owners[i], low, high);
         }

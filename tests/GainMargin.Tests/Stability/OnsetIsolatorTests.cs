@@ -26,7 +26,7 @@ public sealed class OnsetIsolatorTests
     private static OnsetIsolator Isolated(LoopTerms terms, double reach = 10)
     {
         var isolator = new OnsetIsolator(terms, reach);
-        isolator.Run();
+        isolator.Run(CancellationToken.None);
         return isolator;
     }
 
@@ -88,6 +88,14 @@ public sealed class OnsetIsolatorTests
 
         Assert.False(isolator.IsComplete);
         Assert.Equal(Coverage.Sampled, OnsetFinder.FindAll(Boundaries.Lossless()).Completeness.Flutter);
+    }
+
+    [Fact]
+    public void Run_Cancelled_Throws()
+    {
+        var isolator = new OnsetIsolator(Modes(5, 1e-2, new FeedbackRatios { Position = 1 }), 10);
+
+        Assert.Throws<OperationCanceledException>(() => isolator.Run(new CancellationToken(canceled: true)));
     }
 
     [Fact]
