@@ -75,9 +75,6 @@ internal static class RealEigen
             "eigenvalues", Guard.Invariant($"The eigenvalue iteration did not converge for a matrix of order {n}."), innerException: cause);
     }
 
-    /// <summary>Eigenvalues only, in the order of <see cref="Solve"/>.</summary>
-    public static Complex[] Values(Matrix<double> a) => Solve(a).Values;
-
     private static EigenSystem OfZero(int n)
     {
         var unit = Enumerable.Range(0, n).Select(i => Enumerable.Range(0, n).Select(j => i == j ? Complex.One : Complex.Zero).ToArray()).ToArray();

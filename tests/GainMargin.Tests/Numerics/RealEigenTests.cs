@@ -128,13 +128,6 @@ public sealed class RealEigenTests
         Assert.Equal(first.Left.SelectMany(v => v), second.Left.SelectMany(v => v));
     }
 
-    [Fact]
-    public void Values_AnyMatrix_AreThoseOfSolve()
-    {
-        var a = Systems.Uniform(new Random(4), 7, 7);
-        Assert.Equal(RealEigen.Solve(a).Values, RealEigen.Values(a));
-    }
-
     /// <param name="a">The matrix.</param>
     /// <param name="system">What was found for it.</param>
     /// <param name="unit">Coordinates in which the residuals are measured, <c>unit⁻¹·a·unit</c> being well scaled.</param>
