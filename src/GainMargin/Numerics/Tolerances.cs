@@ -29,7 +29,7 @@ internal static class Tolerances
     /// Rounding of one residual entry per unit of <c>|s|²|M|+|s||D|+|K|</c>: the entries of the matrices carry a few roundings each from
     /// scaling and from the loops, the products one more.
     /// </summary>
-    public const double Entry = 4 * Epsilon;
+    public const double Entry = 8 * Epsilon;
 
     /// <summary>A symmetric matrix whose skew part is below this fraction of its norm counts as symmetric.</summary>
     public static double Symmetry(int n) => 8 * Epsilon * Math.Max(n, 4);
