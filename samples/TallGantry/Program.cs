@@ -9,7 +9,7 @@ Console.WriteLine("A tall gantry milling machine (invented data): position gain 
 foreach (string scaleAt in new[] { "tool.x", "foot.x" })
 {
     var closed = ClosedLoop.Create(Machine.Structure(), Machine.Law(scaleAt));
-    var boundary = OnsetFinder.FindAll(GainPath.OneLoop(closed, Machine.Position, range));
+    var boundary = GainSweep.Run(GainPath.OneLoop(closed, Machine.Position, range));
     var contribution = ClosedLoopAnalysis.ContributionOf(closed, Machine.Position);
 
     Console.WriteLine($"\n=== Glass scale at {scaleAt}: sensor and motor {(contribution.IsCollocated ? "at one place" : "apart")} ===\n");

@@ -8,15 +8,15 @@ using MathNet.Numerics.LinearAlgebra;
 
 namespace GainMargin;
 
-/// <summary>Net work of one loop over a cycle of the mode, as a fraction of the mode's peak kinetic energy.</summary>
+/// <summary>Net work of one loop over a cycle of the mode, as a fraction of the energy of the motion.</summary>
 /// <param name="Loop">Name of the loop.</param>
 /// <param name="Work">Work fed into the motion; negative where the loop takes energy out.</param>
 public readonly record struct LoopWork(string Loop, double Work);
 
 /// <summary>
 /// Where the energy of the motion comes from and goes to over one cycle of the mode <c>v</c> at <c>s = iω</c>:
-/// <c>π[−ω·vᴴD_sym v − Im(vᴴK_skew v) + ω²·Im(vᴴM_skew v)] = 0</c>. All entries are fractions of the peak kinetic energy
-/// <c>½ω²vᴴM_sym v</c>; symmetric stiffness and mass and the gyroscopic part do no net work.
+/// <c>π[−ω·vᴴD_sym v − Im(vᴴK_skew v) + ω²·Im(vᴴM_skew v)] = 0</c>. All entries are fractions of the energy of the motion,
+/// <c>½ω²vᴴM_sym v</c>, twice its mean kinetic energy; symmetric stiffness and mass and the gyroscopic part do no net work.
 /// </summary>
 /// <remarks>
 /// V. V. Bolotin, Nonconservative Problems of the Theory of Elastic Stability, Pergamon 1963, ch. 1 (from memory), for the
@@ -53,10 +53,10 @@ public sealed class EnergyBalance
     [JsonIgnore]
     public double Residual => Dissipative + Circulatory + SkewMass;
 
-    /// <summary>The works in per cent of the peak kinetic energy.</summary>
+    /// <summary>The works in per cent of the energy of the motion.</summary>
     public override string ToString()
     {
-        var text = new StringBuilder("work per cycle, % of peak kinetic energy: ");
+        var text = new StringBuilder("work per cycle, % of the energy of the motion: ");
         text.Append("dissipative ").Append(Percent(Dissipative)).Append(", circulatory ").Append(Percent(Circulatory));
         if (SkewMass != 0)
         {

@@ -125,28 +125,6 @@ internal sealed class ModalSolution
         return result;
     }
 
-    /// <summary>Residues of the receptance from actuator to sensor of one loop, <c>(sᵀv)(wᴴb)/wᴴ(2sM + D)v</c>.</summary>
-    public Complex[] Residues(int loop)
-    {
-        var drive = _model.Drive.Column(loop).Select(x => new Complex(x, 0)).ToArray();
-        var sense = _model.Sense.Column(loop).Select(x => new Complex(x, 0)).ToArray();
-        var residues = new Complex[Values.Length];
-        for (int i = 0; i < residues.Length; i++)
-        {
-            residues[i] = Values[i].Imaginary < 0
-                ? Complex.Conjugate(residues[i - 1])
-                : BorderedSystem.Inner(sense, Right[i]) * BorderedSystem.Inner(Left[i], drive)
-                    / BorderedSystem.Inner(Left[i], _closed.SlopeTimes(Values[i], Right[i]));
-        }
-
-        return residues;
-    }
-
-    /// <summary>Acceleration at the sensor per force of the actuator of one loop, at infinite frequency: <c>sᵀM⁻¹b</c>.</summary>
-    public double DirectAcceleration(int loop)
-        => _model.Sense.Column(loop) * (Dense.TrySolve(_closed.Mass, _model.Drive.Column(loop).ToColumnMatrix())?.Column(0)
-            ?? throw new NumericalFailureException("closed-loop mass", "The closed-loop mass matrix is singular at this gain."));
-
     private static bool HasMassFeedback(LoopedPencil model)
     {
         foreach (var ratio in model.Ratios)

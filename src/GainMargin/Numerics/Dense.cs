@@ -82,8 +82,9 @@ internal static class Dense
         {
             return factorise();
         }
-        catch (NonConvergenceException failure)
+        catch (Exception failure) when (failure is NonConvergenceException or IndexOutOfRangeException)
         {
+            // The managed iterations leave their arrays where entries overflow on the way.
             throw new NumericalFailureException(stage, $"The iteration for {stage} did not converge.", innerException: failure);
         }
     }

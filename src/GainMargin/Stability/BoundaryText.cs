@@ -44,7 +44,7 @@ internal static class BoundaryText
         if (interval.LeastDamped is { } least)
         {
             line += string.Create(
-                CultureInfo.InvariantCulture, $", least damping ratio {least.DampingRatio:G4} at {least.Gain:G5} ({units.Show(least.Frequency)})");
+                CultureInfo.InvariantCulture, $", away from its ends least damping ratio {least.DampingRatio:G4} at {least.Gain:G5} ({units.Show(least.Frequency)})");
         }
 
         return line;

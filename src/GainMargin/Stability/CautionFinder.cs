@@ -69,10 +69,11 @@ internal static class CautionFinder
         }
 
         var interval = ledger.Intervals.First(i => release >= i.From && release <= i.To);
-        if (interval.Inside != StabilityVerdict.Stable)
+        var verdict = release == interval.From ? interval.AtFrom : release == interval.To ? interval.AtTo : interval.Inside;
+        if (verdict != StabilityVerdict.Stable)
         {
             cautions.Add(new Caution(
-                CautionKind.ReleaseNotStable, Guard.Invariant($"the release gain {release:G7} was not shown to be stable: {BoundaryText.Word(interval.Inside)}.")));
+                CautionKind.ReleaseNotStable, Guard.Invariant($"the release gain {release:G7} was not shown to be stable: {BoundaryText.Word(verdict)}.")));
         }
     }
 

@@ -36,7 +36,7 @@ internal sealed class FlutterSearch
         _assessment = new StepAssessment(_sweep, from, to);
         var first = _sweep.SampleAt(from);
         var left = first;
-        double[] grid = SweepGrid.Between(from, to, _sweep.Path.Range.Width, _options);
+        double[] grid = SweepGrid.Between(from, to, _sweep.Path.Range.Width, _options, _sweep.Path.ReleaseValue);
         for (int i = 1; i < grid.Length; i++)
         {
             BudgetSpent |= _sweep.Decompositions >= _options.MaximumDecompositions;
@@ -47,7 +47,7 @@ internal sealed class FlutterSearch
             }
 
             bool last = i == grid.Length - 1;
-            var right = last ? _sweep.SampleAt(to) : SampleOffAxis(grid[i], SweepGrid.Aside * (grid[i] - grid[i - 1]));
+            var right = last ? _sweep.SampleAt(to) : GridSample(grid[i], SweepGrid.Aside * (grid[i] - grid[i - 1]));
             Resolve(left, right);
             left = right;
             _settled(left.Gain);
@@ -124,6 +124,23 @@ internal sealed class FlutterSearch
             pending.Push((left, middle));
         }
     }
+
+    /// <summary>A first sample, moved aside where that takes a pair off the axis: it may have met the very gain at which one touches.</summary>
+    private SweepSample GridSample(double at, double aside)
+    {
+        var sample = _sweep.SampleAt(at);
+        int onAxis = PairsOnAxis(sample);
+        if (onAxis == 0)
+        {
+            return sample;
+        }
+
+        var moved = _sweep.SampleAt(at + (0.618 * aside));
+        return PairsOnAxis(moved) < onAxis ? moved : sample;
+    }
+
+    private static int PairsOnAxis(SweepSample sample)
+        => Enumerable.Range(0, sample.Values.Length).Count(i => sample.Values[i].Imaginary > 0 && sample.IsOnAxis(i));
 
     /// <summary>A sample at which no pair lies on the axis within rounding by accident: moved aside where one does.</summary>
     private SweepSample SampleOffAxis(double at, double aside)

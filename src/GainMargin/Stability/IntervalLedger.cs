@@ -15,10 +15,19 @@ internal sealed class IntervalLedger
     private readonly List<OnsetDraft> _drafts;
     private readonly List<GainStretch> _open;
     private readonly List<GainStretch> _onAxis;
+    private readonly bool _trusted;
 
+    /// <param name="sweep">The path made ready.</param>
+    /// <param name="samples">Samples taken.</param>
+    /// <param name="drafts">Onsets found.</param>
+    /// <param name="open">Stretches left open.</param>
+    /// <param name="onAxis">Stretches with a pair on the axis.</param>
+    /// <param name="trusted">Whether counts at one gain may speak for an interval; if not, no interval is given a verdict.</param>
     public IntervalLedger(
-        SweepModel sweep, ImmutableArray<SweepSample> samples, List<OnsetDraft> drafts, List<GainStretch> open, List<GainStretch> onAxis)
+        SweepModel sweep, ImmutableArray<SweepSample> samples, List<OnsetDraft> drafts, List<GainStretch> open, List<GainStretch> onAxis,
+        bool trusted = true)
     {
+        _trusted = trusted;
         _sweep = sweep;
         _samples = samples;
         _drafts = drafts;
@@ -42,11 +51,18 @@ internal sealed class IntervalLedger
 
     public ImmutableArray<GainInterval> Intervals { get; private set; } = [];
 
+    /// <summary>
+    /// Whether the counts are those that the onsets and samples demand: a pair changes the count by two in its direction, a
+    /// divergence by one, and no sample inside an interval counts otherwise than its middle. If not, an onset was not seen.
+    /// </summary>
+    public bool AddsUp { get; private set; } = true;
+
     public void Run()
     {
         var range = _sweep.Path.Range;
         var pieces = Pieces();
         Onsets = [.. _drafts.Select(d => Counted(d, pieces))];
+        AddsUp = OnsetsAddUp() && pieces.All(SamplesAgree);
         var atFrom = _sweep.JudgeAt(range.From);
         var atTo = _sweep.JudgeAt(range.To);
         var intervals = ImmutableArray.CreateBuilder<GainInterval>(pieces.Count);
@@ -61,6 +77,41 @@ internal sealed class IntervalLedger
         }
 
         Intervals = intervals.ToImmutable();
+    }
+
+    private bool OnsetsAddUp()
+    {
+        for (int i = 0; i < _drafts.Count;)
+        {
+            int last = i;
+            while (last + 1 < _drafts.Count && _drafts[last + 1].IsTogetherWith(_drafts[i]))
+            {
+                last++;
+            }
+
+            var group = _drafts.GetRange(i, last - i + 1);
+            int change = Onsets[last].Above.Growing - Onsets[i].Below.Growing;
+            int undecided = Math.Max(Onsets[last].Above.Undecided, Onsets[i].Below.Undecided);
+            bool pairs = group.All(d => d.Kind == OnsetKind.Flutter);
+            bool isOdd = group.Count == 1 && group[0].Kind == OnsetKind.Divergence;
+            int demanded = group.Sum(d => 2 * Math.Sign(d.Slope ?? 0));
+            if (undecided == 0 && ((pairs && change != demanded) || (isOdd && Math.Abs(change) != 1)))
+            {
+                return false;
+            }
+
+            i = last + 1;
+        }
+
+        return true;
+    }
+
+    private bool SamplesAgree(Piece piece)
+    {
+        double beside = SweepRun.Inset * _sweep.Path.Range.Width;
+        return piece.IsOpen || piece.Count.Undecided > 0 || _samples
+            .Where(s => s.Gain > piece.From + beside && s.Gain < piece.To - beside)
+            .Select(s => s.Roots.Count).All(c => c.Undecided > 0 || c.Growing == piece.Count.Growing);
     }
 
     private static bool IsApart(StabilityVerdict end, Piece piece) => end != piece.Inside || end == StabilityVerdict.Undecided;
@@ -106,7 +157,7 @@ internal sealed class IntervalLedger
                 below.Kind == CutKind.Onset ? from + inset : from, above.Kind == CutKind.Onset ? to - inset : to);
         }
 
-        return new Piece(from, to, count, verdict, false);
+        return new Piece(from, to, count, _trusted ? verdict : StabilityVerdict.Undecided, false);
     }
 
     /// <summary>What ends an interval, ascending and apart; the ends of the range are the first and last.</summary>

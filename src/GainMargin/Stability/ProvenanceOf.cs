@@ -11,12 +11,8 @@ internal static class ProvenanceOf
 {
     public static string LibraryVersion { get; } = Version();
 
-    public static Provenance Sweep(GainPath path, SweepOptions options) => Of("sampled sweep", path, options);
-
-    public static Provenance OneLoop(GainPath path, OnsetOptions options) => Of("complete search of one loop", path, options.Sweep);
-
-    private static Provenance Of(string method, GainPath path, SweepOptions options)
-        => new(LibraryVersion, method, HashOf(w => Write(w, path)), HashOf(w => Write(w, options)),
+    public static Provenance Sweep(GainPath path, SweepOptions options)
+        => new(LibraryVersion, "sampled sweep", HashOf(w => Write(w, path)), HashOf(w => Write(w, options)),
             LinearAlgebraBackend.Current.Name, $"{RuntimeInformation.FrameworkDescription}, {RuntimeInformation.ProcessArchitecture}");
 
     private static string Version()

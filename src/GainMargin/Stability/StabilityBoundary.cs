@@ -100,7 +100,7 @@ public sealed class StabilityBoundary
     public bool TryGetNearest(double gain, [System.Diagnostics.CodeAnalysis.NotNullWhen(true)] out NearestOnset? nearest)
     {
         Guard.Finite(gain);
-        var sameSign = Onsets.Where(o => o.Gain * gain > 0).ToArray();
+        var sameSign = Onsets.Where(o => Math.Abs(o.Gain) > o.GainUncertainty && Math.Sign(o.Gain) == Math.Sign(gain)).ToArray();
         var onset = sameSign.Length > 0
             ? sameSign.MinBy(o => Math.Abs(Math.Log(o.Gain / gain)))
             : Onsets.MinBy(o => Math.Abs(o.Gain - gain));

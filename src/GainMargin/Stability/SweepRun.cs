@@ -8,11 +8,14 @@ internal sealed class SweepRun
     /// <summary>Distance from a divergence at which sampling stops, as a fraction of the range.</summary>
     public const double Inset = 1e-8;
 
+    /// <summary>How often a sweep whose books do not balance is repeated, each time with a quarter of the step.</summary>
+    private const int Repetitions = 2;
+
     private readonly GainPath _path;
     private readonly SweepOptions _options;
     private readonly IProgress<FinderProgress>? _progress;
     private readonly SweepModel _sweep;
-    private readonly FlutterSearch _search;
+    private FlutterSearch _search;
 
     public SweepRun(GainPath path, SweepOptions options, IProgress<FinderProgress>? progress, CancellationToken cancellation)
     {
@@ -28,25 +31,50 @@ internal sealed class SweepRun
         Report("barriers", 0);
         var divergences = SingularGains.Divergences(_sweep);
         var infinities = SingularGains.ThroughInfinity(_sweep);
-        SearchPieces(divergences, infinities);
-
         var evidence = new OnsetEvidence(_sweep);
-        var found = _search.Crossings.Select(evidence.OfFlutter)
-            .Concat(divergences.Found.Where(IsInside).Select(evidence.OfDivergence))
-            .Concat(infinities.Found.Where(IsInside).Select(evidence.OfInfinity));
-        var stretches = GainStretch.Merged(_search.Open);
-        var ledger = new IntervalLedger(_sweep, SamplesOf(_search.Steps), OnsetDraft.WithoutRepeats(found), stretches, GainStretch.Merged(_search.OnAxis));
-        ledger.Run();
-        Report("done", 1);
+        IntervalLedger ledger;
+        List<GainStretch> stretches;
+        for (int round = 0; ; round++)
+        {
+            SearchPieces(divergences, infinities);
+            stretches = GainStretch.Merged(_search.Open);
+            ledger = Ledger(evidence, divergences, infinities, stretches, trusted: true);
+            if (ledger.AddsUp || round == Repetitions || _sweep.Decompositions >= _options.MaximumDecompositions)
+            {
+                break;
+            }
 
-        var cautions = CautionFinder.Run(_sweep, ledger, stretches, divergences.IsRegular && infinities.IsRegular);
+            var finer = _options with { MaximumStep = _options.MaximumStep / Math.Pow(4, round + 1), MinimumStep = Math.Min(_options.MinimumStep, 1e-10) };
+            _search = new FlutterSearch(_sweep, finer, Settled);
+        }
+
+        if (!ledger.AddsUp)
+        {
+            ledger = Ledger(evidence, divergences, infinities, stretches, trusted: false);
+            stretches = [new GainStretch(_path.Range.From, _path.Range.To)];
+        }
+
+        Report("done", 1);
+        bool singularSetsAreComplete = divergences.IsRegular && infinities.IsRegular;
         return new StabilityBoundary(
             _path.ToString(), _path.Unit, _path.Nominal.Structure.Units, _path.Range.From, _path.Range.To, _path.ReleaseValue,
             ledger.Onsets, ledger.Intervals, _options.KeepLoci ? LocusBuilder.Run(_search.Steps, _sweep.Model.Rate) : [],
             new Completeness(
-                Coverage.Sampled, divergences.IsRegular && infinities.IsRegular ? Coverage.Complete : Coverage.Sampled,
+                Coverage.Sampled, singularSetsAreComplete ? Coverage.Complete : Coverage.Sampled,
                 _search.Steps.Select(s => s.Right.Gain - s.Left.Gain).DefaultIfEmpty(_path.Range.Width).Max(), _sweep.Decompositions),
-            cautions, ProvenanceOf.Sweep(_path, _options));
+            CautionFinder.Run(_sweep, ledger, stretches, singularSetsAreComplete), ProvenanceOf.Sweep(_path, _options));
+    }
+
+    private IntervalLedger Ledger(
+        OnsetEvidence evidence, SingularGains divergences, SingularGains infinities, List<GainStretch> stretches, bool trusted)
+    {
+        var found = _search.Crossings.Select(evidence.OfFlutter)
+            .Concat(divergences.Found.Where(IsInside).Select(evidence.OfDivergence))
+            .Concat(infinities.Found.Where(IsInside).Select(evidence.OfInfinity));
+        var ledger = new IntervalLedger(
+            _sweep, SamplesOf(_search.Steps), OnsetDraft.WithoutRepeats(found), stretches, GainStretch.Merged(_search.OnAxis), trusted);
+        ledger.Run();
+        return ledger;
     }
 
     private static ImmutableArray<SweepSample> SamplesOf(List<SweepStep> steps)

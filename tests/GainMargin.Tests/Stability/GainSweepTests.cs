@@ -139,6 +139,35 @@ public sealed class GainSweepTests
         Assert.Equal(0.1 * size, onset.Gain, 1e-13 * size);
     }
 
+    /// <summary>Two frequencies meet near the release gain and flutter in a pocket narrower than a step.</summary>
+    [Fact]
+    public void Run_ReleaseGainInANarrowPocket_IsSeenThere()
+    {
+        var structure = ElasticStructure.FromRowMajor(["a", "b"], [1, 0, 0, 1], [0.006, 0, 0, 0.006], [1, 0.03, -0.03, 4]);
+        var path = Boundaries.Path(structure, Boundaries.Loop("g", "a", "a", new() { Position = 1 }, 3), 0, 10.3);
+
+        var boundary = GainSweep.Run(path);
+
+        Assert.Equal(StabilityVerdict.Unstable, ClosedLoopAnalysis.Spectrum(path.Nominal).Verdict);
+        Assert.Equal(StabilityVerdict.Unstable, boundary.VerdictAt(boundary.ReleaseGain));
+        Assert.Equal([CrossingDirection.Destabilising, CrossingDirection.Restabilising], boundary.Onsets.Select(o => o.Direction));
+    }
+
+    [Fact]
+    public void Run_EveryKindOfStructure_VerdictAtReleaseIsThatOfTheSpectrum()
+    {
+        foreach (int seed in Enumerable.Range(1, 40))
+        {
+            var path = WideCases.Path(seed, 12);
+            var boundary = GainSweep.Run(path);
+            var there = boundary.VerdictAt(boundary.ReleaseGain);
+            var spectrum = ClosedLoopAnalysis.Spectrum(path.Nominal).Verdict;
+            bool contradicts = path.Range.From <= boundary.ReleaseGain && boundary.ReleaseGain <= path.Range.To
+                && there != StabilityVerdict.Undecided && spectrum != StabilityVerdict.Undecided && there != spectrum;
+            Assert.False(contradicts, $"seed {seed}: {there} in the boundary, {spectrum} in the spectrum");
+        }
+    }
+
     /// <summary>Entries whose squares overflow: an answer or a refusal, and neither a hang nor a foreign exception.</summary>
     [Theory]
     [InlineData(1e100)]
