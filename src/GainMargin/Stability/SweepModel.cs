@@ -87,7 +87,7 @@ internal sealed class SweepModel
             .Select(f => f.Verdict).FirstOrDefault(StabilityVerdict.Undecided);
     }
 
-    public RootSet RootsAt(double value) => Counted(value, () => RootSet.Raw(Model, GainsAt(value), Permanent));
+    public RootSet RootsAt(double value) => Counted(value, () => RootSet.Polished(Model, GainsAt(value), Permanent, MostPolished));
 
     /// <summary>Projections <c>RRᵀM</c> onto drifting and free rigid motion, in evenly scaled coordinates.</summary>
     public (Matrix<double> Drifting, Matrix<double> Free) RigidProjections()
