@@ -76,7 +76,7 @@ internal sealed class ModalSolution
             var v = NullVector(system.Values[i], q, drift, Negated(Sum(Dense.Times(k, q), Dense.Times(d, rate))), rigid);
             var y = system.Left[i];
             var w = Sum(Dense.Times(rigid.Elastic, y.AsSpan(nc, nc)), Dense.Times(rigid.Drifting, y.AsSpan(2 * nc)));
-            w = Unit(inverseMass is null ? w : Dense.TransposeTimes(inverseMass, w));
+            w = Dense.Unit(inverseMass is null ? w : Dense.TransposeTimes(inverseMass, w));
             (right[i], left[i]) = rigid.OnLeft ? (Conjugate(w), Conjugate(v)) : (v, w);
         }
 
@@ -180,13 +180,7 @@ internal sealed class ModalSolution
             shape[i] = (s * s * elastic[i]) + (s * drift[i]) + free[i];
         }
 
-        return Dense.Norm2(shape) > 0 ? Unit(shape) : Dense.Norm2(drift) > 0 ? Unit(drift) : Unit(elastic);
-    }
-
-    private static Complex[] Unit(Complex[] v)
-    {
-        double length = Dense.Norm2(v);
-        return length == 0 ? v : Array.ConvertAll(v, c => c / length);
+        return Dense.Norm2(shape) > 0 ? Dense.Unit(shape) : Dense.Norm2(drift) > 0 ? Dense.Unit(drift) : Dense.Unit(elastic);
     }
 
     private static Complex[] Conjugate(Complex[] v) => Array.ConvertAll(v, Complex.Conjugate);

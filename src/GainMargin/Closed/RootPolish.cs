@@ -33,8 +33,8 @@ internal static class RootPolish
                 return null;
             }
 
-            right = Unit(system.Right);
-            left = Unit(system.Left);
+            right = Dense.Unit(system.Right);
+            left = Dense.Unit(system.Left);
             s += change;
             if (size <= rounding || (size >= 0.5 * previous && size <= Tolerances.Stagnation * rounding))
             {
@@ -45,11 +45,5 @@ internal static class RootPolish
         }
 
         return null;
-    }
-
-    private static Complex[] Unit(Complex[] v)
-    {
-        double length = Dense.Norm2(v);
-        return length == 0 ? v : Array.ConvertAll(v, c => c / length);
     }
 }

@@ -256,6 +256,13 @@ internal static class Dense
     /// <summary>Frobenius norm, without overflow or underflow on the way.</summary>
     public static double Norm(Matrix<Complex> a) => Norm2(a.AsColumnMajorArray() ?? a.ToColumnMajorArray());
 
+    /// <summary>The vector at unit length; a zero vector stays as it is.</summary>
+    public static Complex[] Unit(Complex[] v)
+    {
+        double length = Norm2(v);
+        return length == 0 ? v : Array.ConvertAll(v, c => c / length);
+    }
+
     public static double Norm2(ReadOnlySpan<Complex> v)
     {
         double largest = 0;

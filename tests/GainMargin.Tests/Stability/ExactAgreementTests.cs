@@ -49,6 +49,22 @@ public sealed class ExactAgreementTests
         Assert.True(solvable > 0.9 * seeds, $"only {solvable} cases could be solved exactly");
     }
 
+    /// <summary>Two branches change sides within one first step: a match that exchanges them hides both crossings.</summary>
+    [Theory]
+    [InlineData(20611)]
+    [InlineData(35039)]
+    [InlineData(51914)]
+    [InlineData(54192)]
+    [InlineData(57955)]
+    public void Run_BranchesExchangedInOneStep_BothCrossingsFound(int seed)
+    {
+        var test = ExactCase.Random(seed);
+
+        var expected = test.Exact().Onsets(test.Range.From, test.Range.To);
+
+        Assert.Equal(expected.Select(e => e.Gain), GainSweep.Run(test.Path()).Onsets.Select(o => o.Gain), (a, b) => IsSame(test, b, a));
+    }
+
     private static bool IsSame(ExactCase test, double found, double expected)
         => Math.Abs(found - expected) <= GainTolerance * Math.Max(Math.Abs(expected), 1e-3 * test.Range.Width);
 
