@@ -26,6 +26,11 @@ internal static class Guard
             ? value
             : throw new ArgumentOutOfRangeException(parameter, value, Invariant($"{parameter} is {Show(value)}; it must be finite."));
 
+    public static double NotNegative(double value, [CallerArgumentExpression(nameof(value))] string? parameter = null)
+        => Finite(value, parameter) >= 0
+            ? value
+            : throw new ArgumentOutOfRangeException(parameter, value, Invariant($"{parameter} is {Show(value)}; it must not be negative."));
+
     public static double InRange(
         double value, double above, double atMost, [CallerArgumentExpression(nameof(value))] string? parameter = null)
         => value > above && value <= atMost

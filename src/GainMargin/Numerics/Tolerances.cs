@@ -16,6 +16,16 @@ internal static class Tolerances
     /// <summary>Largest eigenvalue condition number that first-order error bounds are trusted with.</summary>
     public const double LargestCondition = 1e-1 / Epsilon;
 
+    /// <summary>Condition number up to which the factors of an equilibrated matrix cost no more than half the digits.</summary>
+    /// <remarks>1/√ε.</remarks>
+    public const double ModerateCondition = 67108864;
+
+    /// <summary>
+    /// A disc about an eigenvalue wider than this fraction of the norm says that the vectors are poor: a double eigenvalue costs
+    /// far less.
+    /// </summary>
+    public const double WideDisc = 1e-3;
+
     /// <summary>
     /// Backward error of a dense factorisation or eigenvalue iteration of order <paramref name="n"/>; the factor covers the
     /// worst of a million eigenvalues of integer matrices, which exceed <c>ε·n·‖A‖</c> by up to 1.6.

@@ -72,6 +72,33 @@ public sealed class BalancingTests
         Assert.NotEqual(before, balanced);
     }
 
+    [Fact]
+    public void Equilibrate_BadlyScaledRowsAndColumns_AreOfSizeOne()
+    {
+        var random = new Random(25);
+        for (int trial = 0; trial < 200; trial++)
+        {
+            int n = random.Next(1, 13);
+            double[] unit = [.. Enumerable.Range(0, n).Select(_ => Math.Pow(10, (40 * random.NextDouble()) - 20))];
+            Matrix<double> a = DenseMatrix.Create(n, n, (i, j) => ((2 * random.NextDouble()) - 1) * unit[i] * unit[n - 1 - j]);
+            var (rows, columns) = Balancing.Equilibrate(a);
+            var even = DenseMatrix.Create(n, n, (i, j) => Math.ScaleB(Math.Abs(a[i, j]), rows[i] + columns[j]));
+            for (int i = 0; i < n; i++)
+            {
+                Assert.InRange(even.Row(i).Maximum(), 0.25, 4);
+                Assert.InRange(even.Column(i).Maximum(), 0.25, 4);
+            }
+        }
+    }
+
+    [Fact]
+    public void Equilibrate_RowAndColumnOfZeros_AreLeftAlone()
+    {
+        var (rows, columns) = Balancing.Equilibrate(DenseMatrix.OfArray(new[,] { { 0, 0 }, { 0, 1e30 } }));
+        Assert.Equal((0, 0), (rows[0], columns[0]));
+        Assert.Equal(99, -(rows[1] + columns[1]), 1.0);
+    }
+
     private static Matrix<double> BadlyScaled(Random random, int n)
     {
         double[] unit = [.. Enumerable.Range(0, n).Select(_ => Math.Pow(10, (16 * random.NextDouble()) - 8))];
