@@ -74,6 +74,24 @@ internal sealed class LoopedPencil
             transposeTimes(Drive), transposeTimes(Sense), ratios, _residual is null ? null : _residual * rate * rate);
     }
 
+    /// <summary>
+    /// The same with every root moved by <paramref name="rate"/> to the right, <c>s → s − σ</c>: <c>M, D − 2σM, K − σD + σ²M</c> and ratios
+    /// <c>p − σv + σ²a, v − 2σa, a</c>. What is stable then decays at least at that rate.
+    /// </summary>
+    public LoopedPencil Decaying(double rate)
+    {
+        var ratios = Array.ConvertAll(_ratios, p => new FeedbackRatios
+        {
+            Position = p.Position - (rate * p.Rate) + (rate * rate * p.Acceleration),
+            Rate = p.Rate - (2 * rate * p.Acceleration),
+            Acceleration = p.Acceleration,
+        });
+        return new LoopedPencil(
+            new QuadraticPencil(
+                Open.Mass, Open.Damping - (Open.Mass * (2 * rate)), Open.Stiffness - (Open.Damping * rate) + (Open.Mass * (rate * rate))),
+            Drive, Sense, ratios, _residual);
+    }
+
     /// <summary>Closed matrices at given gains (in model units).</summary>
     public QuadraticPencil At(ReadOnlySpan<double> gains)
     {

@@ -16,11 +16,21 @@ internal sealed class ModalSolution
 
     private readonly LoopedPencil _model;
     private readonly QuadraticPencil _closed;
+    private readonly RigidMotion _rigid;
+    private readonly Matrix<double> _k;
+    private readonly Matrix<double> _d;
+    private readonly Matrix<double>? _inverseMass;
 
-    private ModalSolution(LoopedPencil model, QuadraticPencil closed, EigenSystem system, Complex[][] right, Complex[][] left)
+    private ModalSolution(
+        LoopedPencil model, QuadraticPencil closed, RigidMotion rigid, Matrix<double> k, Matrix<double> d, Matrix<double>? inverseMass,
+        EigenSystem system, Complex[][] right, Complex[][] left)
     {
         _model = model;
         _closed = closed;
+        _rigid = rigid;
+        _k = k;
+        _d = d;
+        _inverseMass = inverseMass;
         Values = system.Values;
         Uncertainty = system.Uncertainty;
         Right = right;
@@ -57,6 +67,8 @@ internal sealed class ModalSolution
         var k = inverseMass is null ? Side(closed.Stiffness) : inverseMass * Side(closed.Stiffness);
         var d = inverseMass is null ? Side(closed.Damping) : inverseMass * Side(closed.Damping);
         var system = RealEigen.Solve(StateMatrix(k, d, rigid));
+        double lost = inverseMass is null ? 1 : Math.Max(1, Dense.Norm(closed.Mass) * Dense.Norm(inverseMass) / n);
+        system = system with { Uncertainty = [.. system.Uncertainty.Select(u => lost * u)] };
         int count = system.Values.Length;
         int nc = rigid.Elastic.ColumnCount;
         var right = new Complex[count][];
@@ -80,7 +92,7 @@ internal sealed class ModalSolution
             (right[i], left[i]) = rigid.OnLeft ? (Conjugate(w), Conjugate(v)) : (v, w);
         }
 
-        return new ModalSolution(model, closed, system, right, left);
+        return new ModalSolution(model, closed, rigid, k, d, inverseMass, system, right, left);
 
         Matrix<double> Side(Matrix<double> a) => rigid.OnLeft ? a.Transpose() : a;
     }
@@ -123,6 +135,71 @@ internal sealed class ModalSolution
         }
 
         return result;
+    }
+
+    /// <summary>
+    /// Residues of the receptance from actuator to sensor of one loop, <c>(sᵀv)(wᴴb)/wᴴ(2sM + D)v</c>, and the size that the
+    /// rounding of each is measured against.
+    /// </summary>
+    public (Complex Value, double Size)[] Residues(int loop)
+    {
+        var residues = new (Complex, double)[Values.Length];
+        double patterns = _model.Sense.Column(loop).L2Norm() * _model.Drive.Column(loop).L2Norm();
+        for (int i = 0; i < residues.Length; i++)
+        {
+            var slope = Slope(i);
+            var sensed = Dense.TransposeTimes(_model.Sense, Right[i])[loop];
+            var driven = Complex.Conjugate(Dense.TransposeTimes(_model.Drive, Left[i])[loop]);
+            residues[i] = (sensed * driven / slope, patterns / Complex.Abs(slope));
+        }
+
+        return residues;
+    }
+
+    /// <summary>
+    /// The receptance of one loop near zero, <c>A/s + B/s²</c>, through the rigid motion that was split off: with the elastic state
+    /// <c>X = (s − A)⁻¹B</c> the sensor sees <c>(C₁ + C₂/s + C₃/s²)X + B₀/s²</c>.
+    /// </summary>
+    public (double Simple, double Double) ZeroCoefficients(int loop)
+    {
+        if (_rigid.ZeroRoots == 0)
+        {
+            return (0, 0);
+        }
+
+        var (drive, sense) = _rigid.OnLeft
+            ? (_model.Sense.Column(loop), _model.Drive.Column(loop))
+            : (_model.Drive.Column(loop), _model.Sense.Column(loop));
+        var force = _inverseMass is null ? drive : _inverseMass * drive;
+        var (c, r, f) = (_rigid.Elastic, _rigid.Drifting, _rigid.Free);
+        var none = Dense.Zero(1, c.ColumnCount);
+        var sensed = sense.ToRowMatrix();
+        var input = Dense.Zero(c.ColumnCount, 1).Stack(c.TransposeThisAndMultiply(force).ToColumnMatrix());
+        var drift = none.Append(none);
+        if (r.ColumnCount > 0)
+        {
+            input = input.Stack(r.TransposeThisAndMultiply(force).ToColumnMatrix());
+            drift = drift.Append(sensed * r);
+        }
+
+        var free = sensed * f;
+        var onFree = free * f.Transpose();
+        var acceleration = -(onFree * _k * c).Append(onFree * _d * c);
+        acceleration = r.ColumnCount > 0 ? acceleration.Append(-(onFree * _d * r)) : acceleration;
+        var once = Dense.TrySolve(StateMatrix(_k, _d, _rigid), input);
+        var twice = once is null ? null : Dense.TrySolve(StateMatrix(_k, _d, _rigid), once);
+        if (once is null || twice is null)
+        {
+            throw new NumericalFailureException("rigid motion", "Zero roots remain after rigid motion was split off.");
+        }
+
+        double direct = (onFree * force)[0];
+        double simple = -(drift * once)[0, 0] - (acceleration * twice)[0, 0];
+        double @double = direct - (acceleration * once)[0, 0];
+        double rounding = Tolerances.NullSpace(_closed.Order, sense.L2Norm());
+        double simpleSize = rounding * (Dense.Norm(input) + Dense.Norm(once) + Dense.Norm(twice));
+        double doubleSize = rounding * (force.L2Norm() + Dense.Norm(once));
+        return (Math.Abs(simple) <= simpleSize ? 0 : simple, Math.Abs(@double) <= doubleSize ? 0 : @double);
     }
 
     private static bool HasMassFeedback(LoopedPencil model)

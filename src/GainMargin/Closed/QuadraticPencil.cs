@@ -1,6 +1,7 @@
 using System.Numerics;
 using GainMargin.Numerics;
 using MathNet.Numerics.LinearAlgebra;
+using MathNet.Numerics.LinearAlgebra.Double;
 
 namespace GainMargin;
 
@@ -10,6 +11,9 @@ internal sealed record QuadraticPencil(Matrix<double> Mass, Matrix<double> Dampi
     public int Order => Mass.RowCount;
 
     public bool IsFinite => Mass.ForAll(double.IsFinite) && Damping.ForAll(double.IsFinite) && Stiffness.ForAll(double.IsFinite);
+
+    /// <summary><c>|M|</c>, <c>|D|</c>, <c>|K|</c>, entry by entry.</summary>
+    public QuadraticPencil Moduli => new(Mass.PointwiseAbs(), Damping.PointwiseAbs(), Stiffness.PointwiseAbs());
 
     public Matrix<Complex> At(Complex s)
     {
@@ -22,6 +26,14 @@ internal sealed record QuadraticPencil(Matrix<double> Mass, Matrix<double> Dampi
 
     /// <summary><c>Q′(s) v = (2sM + D) v</c>.</summary>
     public Complex[] SlopeTimes(Complex s, Complex[] v) => Combine(2 * s, 1, 0, v);
+
+    /// <summary>The same roots: rows and columns multiplied by the powers of two that bring those of a given matrix to size one.</summary>
+    public QuadraticPencil Equilibrated(Matrix<double> matrix)
+    {
+        var (rows, columns) = Balancing.Equilibrate(matrix);
+        Matrix<double> Scaled(Matrix<double> a) => DenseMatrix.Create(Order, Order, (i, j) => Math.ScaleB(a[i, j], rows[i] + columns[j]));
+        return new QuadraticPencil(Scaled(Mass), Scaled(Damping), Scaled(Stiffness));
+    }
 
     private Complex[] Combine(Complex m, Complex d, Complex k, Complex[] v)
     {

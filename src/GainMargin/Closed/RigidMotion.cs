@@ -23,11 +23,16 @@ internal sealed record RigidMotion(Matrix<double> Elastic, Matrix<double> Drifti
     public static RigidMotion Of(NormalisedModel model, ReadOnlySpan<double> gains)
     {
         var closed = model.ClosedHat(gains);
-        var even = model.Even.At(gains).Stiffness;
-        var moduli = model.Even.ModuliAt(gains).Stiffness;
+        var even = model.Even.At(gains);
+        var moduli = model.Even.ModuliAt(gains);
         return Larger(
-            Find(closed.Stiffness, closed.Damping, false, basis => model.IsAnnihilated(even, moduli, basis)),
-            Find(closed.Stiffness.Transpose(), closed.Damping.Transpose(), true, basis => model.IsAnnihilated(even.Transpose(), moduli.Transpose(), basis)));
+            Find(
+                closed.Stiffness, closed.Damping, false,
+                basis => model.IsAnnihilated(even.Stiffness, moduli.Stiffness, basis), basis => model.IsAnnihilated(even.Damping, moduli.Damping, basis)),
+            Find(
+                closed.Stiffness.Transpose(), closed.Damping.Transpose(), true,
+                basis => model.IsAnnihilated(even.Stiffness.Transpose(), moduli.Stiffness.Transpose(), basis),
+                basis => model.IsAnnihilated(even.Damping.Transpose(), moduli.Damping.Transpose(), basis)));
     }
 
     /// <summary>The side that accounts for more zero roots; the right one where both do.</summary>
@@ -36,17 +41,21 @@ internal sealed record RigidMotion(Matrix<double> Elastic, Matrix<double> Drifti
     /// <param name="stiffness">Everything that can resist displacement, stacked in rows.</param>
     /// <param name="damping">Everything that can resist velocity, stacked in rows.</param>
     /// <param name="onLeft">Whether the rows belong to the transposed matrices.</param>
-    /// <param name="holds">Whether a basis really meets no stiffness, row by row.</param>
-    public static RigidMotion Find(Matrix<double> stiffness, Matrix<double> damping, bool onLeft, Func<Matrix<double>, bool> holds)
+    /// <param name="meetsNoStiffness">Whether a basis really meets no stiffness, row by row.</param>
+    /// <param name="meetsNoDamping">Whether a basis really meets no damping, row by row; if not, all motions drift.</param>
+    public static RigidMotion Find(
+        Matrix<double> stiffness, Matrix<double> damping, bool onLeft, Func<Matrix<double>, bool> meetsNoStiffness, Func<Matrix<double>, bool> meetsNoDamping)
     {
         int n = stiffness.ColumnCount;
         var (rigid, elastic) = Dense.NullSpace(stiffness, Tolerances.NullSpace(n, Dense.Norm(stiffness)));
-        if (rigid.ColumnCount == 0 || !holds(rigid))
+        if (rigid.ColumnCount == 0 || !meetsNoStiffness(rigid))
         {
             return new RigidMotion(Dense.Identity(n), Dense.Zero(n, 0), Dense.Zero(n, 0), onLeft);
         }
 
         var (free, drifting) = Dense.NullSpace(damping * rigid, Tolerances.NullSpace(n, Dense.Norm(damping)));
-        return new RigidMotion(elastic, rigid * drifting, rigid * free, onLeft);
+        return free.ColumnCount == 0 || meetsNoDamping(rigid * free)
+            ? new RigidMotion(elastic, rigid * drifting, rigid * free, onLeft)
+            : new RigidMotion(elastic, rigid, Dense.Zero(n, 0), onLeft);
     }
 }

@@ -11,6 +11,8 @@ namespace GainMargin;
 /// </summary>
 public sealed class ElasticStructure
 {
+    private readonly Lazy<byte[]> _hash;
+
     private ElasticStructure(
         DofNames dofs, DofNames points, Matrix<double> mass, Matrix<double> damping, Matrix<double> stiffness,
         Matrix<double>? shapes, Matrix<double>? residual, UnitLabels? units)
@@ -23,6 +25,7 @@ public sealed class ElasticStructure
         Shapes = shapes is null ? null : new NamedMatrix(points, dofs, shapes);
         ResidualFlexibility = residual is null ? null : new NamedMatrix(points, points, residual);
         Units = units ?? UnitLabels.None;
+        _hash = new Lazy<byte[]>(() => StructureHash.Of(this));
     }
 
     /// <summary>Names of the <c>n</c> generalised coordinates.</summary>
@@ -48,6 +51,9 @@ public sealed class ElasticStructure
 
     /// <summary>Labels of the units.</summary>
     public UnitLabels Units { get; }
+
+    /// <summary>Hash of names and matrices, formed once.</summary>
+    internal byte[] Hash => _hash.Value;
 
     /// <summary>A structure from its matrices, which are copied.</summary>
     /// <param name="matrices">Mass, damping and stiffness, <c>n×n</c>.</param>

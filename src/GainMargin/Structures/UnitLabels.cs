@@ -21,6 +21,8 @@ public sealed record UnitLabels
 
     internal bool IsSeconds => Time == "s";
 
+    private string TimeName => string.IsNullOrWhiteSpace(Time) ? "unit time" : Time;
+
     internal string Show(Frequency frequency)
     {
         if (frequency.IsUnlimited)
@@ -29,17 +31,22 @@ public sealed record UnitLabels
         }
 
         string radians = frequency.Radians.ToString("G7", CultureInfo.InvariantCulture);
-        string time = string.IsNullOrWhiteSpace(Time) ? "unit time" : Time;
         return IsSeconds
             ? $"{radians} rad/s ({frequency.Cycles.ToString("G6", CultureInfo.InvariantCulture)} Hz)"
-            : $"{radians} rad/{time}";
+            : $"{radians} rad/{TimeName}";
     }
+
+    /// <summary>A rate, such as <c>0.1 1/s</c>.</summary>
+    internal string ShowRate(double rate) => $"{rate.ToString("G4", CultureInfo.InvariantCulture)} 1/{TimeName}";
+
+    /// <summary>A time, such as <c>0.1 s</c>.</summary>
+    internal string ShowTime(double time)
+        => string.IsNullOrWhiteSpace(Time) ? $"{time.ToString("G4", CultureInfo.InvariantCulture)} units of time" : $"{time.ToString("G4", CultureInfo.InvariantCulture)} {Time}";
 
     /// <summary>A rate per unit of gain, such as <c>0.1 1/s per N/m</c>.</summary>
     internal string ShowRatePerGain(double rate, string? gainUnit)
     {
-        string time = string.IsNullOrWhiteSpace(Time) ? "unit time" : Time;
         string gain = string.IsNullOrWhiteSpace(gainUnit) ? "unit gain" : gainUnit;
-        return $"{rate.ToString("G4", CultureInfo.InvariantCulture)} 1/{time} per {gain}";
+        return $"{ShowRate(rate)} per {gain}";
     }
 }
