@@ -9,7 +9,7 @@ Console.WriteLine("A tall gantry milling machine (invented data): position gain 
 foreach (string scaleAt in new[] { "tool.x", "foot.x" })
 {
     var closed = ClosedLoop.Create(Machine.Structure(), Machine.Law(scaleAt));
-    var boundary = GainSweep.Run(GainPath.OneLoop(closed, Machine.Position, range));
+    var boundary = OnsetFinder.FindAll(GainPath.OneLoop(closed, Machine.Position, range));
     var contribution = ClosedLoopAnalysis.ContributionOf(closed, Machine.Position);
 
     Console.WriteLine($"\n=== Glass scale at {scaleAt}: sensor and motor {(contribution.IsCollocated ? "at one place" : "apart")} ===\n");
@@ -22,6 +22,8 @@ foreach (string scaleAt in new[] { "tool.x", "foot.x" })
         Console.WriteLine($"\nWhy, at the first onset ({onset.Gain:F3} m/min/mm):");
         Console.WriteLine($"  mode: {onset.RightMode}");
         Console.WriteLine($"  {onset.Energy}");
+        Console.WriteLine($"  a force excites it at: {onset.LeftMode}");
+        Console.WriteLine($"  the matrices of the onset and its mode fit to a backward error of {onset.BackwardError:G2}");
     }
 
     if (scaleAt == "tool.x")

@@ -15,8 +15,17 @@ public enum CautionKind
     /// <summary>Roots that stay on the imaginary axis within rounding: no verdict follows from them.</summary>
     RootsOnAxis,
 
-    /// <summary>A stretch of gains that the narrowest step or the budget left open.</summary>
+    /// <summary>A stretch of gains that rounding, the narrowest step or the budget left open, or that a second matrix contradicts.</summary>
     OpenStretch,
+
+    /// <summary>The structure's own stiffness is not symmetric: intended for follower forces or friction, a slip otherwise.</summary>
+    StiffnessNotSymmetric,
+
+    /// <summary>A mode without damping that the loop does not move: it stays on the axis at every gain.</summary>
+    UnseenMode,
+
+    /// <summary>A loop that neither takes energy out nor puts any in: damping, however small, may lower its onsets.</summary>
+    LosslessLoop,
 
     /// <summary>A root passes through infinity: beyond that gain the model without actuator dynamics means little.</summary>
     ThroughInfinity,

@@ -1,5 +1,6 @@
 using System.Globalization;
 using System.Text.Json.Serialization;
+using GainMargin.Numerics;
 
 namespace GainMargin;
 
@@ -17,12 +18,16 @@ public enum Coverage
 public sealed class Completeness
 {
     [JsonConstructor]
-    internal Completeness(Coverage flutter, Coverage divergence, double widestStep, int decompositions)
+    internal Completeness(
+        Coverage flutter, Coverage divergence, double widestStep, int decompositions, int evaluations, int confirmed, string? whySampled)
     {
         Flutter = flutter;
         Divergence = divergence;
         WidestStep = widestStep;
         Decompositions = decompositions;
+        Evaluations = evaluations;
+        Confirmed = confirmed;
+        WhySampled = whySampled;
     }
 
     /// <summary>Coverage of flutter onsets.</summary>
@@ -40,12 +45,30 @@ public sealed class Completeness
     /// <summary>Eigenvalue decompositions spent.</summary>
     public int Decompositions { get; }
 
+    /// <summary>Evaluations of the loop on the imaginary axis spent, by a search without sampling.</summary>
+    public int Evaluations { get; }
+
+    /// <summary>Stable and marginal intervals that the eigenvalues of a second matrix confirmed.</summary>
+    public int Confirmed { get; }
+
+    /// <summary>Why the complete search was not possible; <see langword="null"/> where it was, or was not asked for.</summary>
+    public string? WhySampled { get; }
+
     /// <summary>The coverage in words.</summary>
     public override string ToString()
     {
+        string because = WhySampled is null ? "" : $" because {WhySampled}";
         string flutter = Flutter == Coverage.Complete
-            ? "complete, for the model as computed and up to rounding"
-            : $"sampled (an excursion narrower than {WidestStep.ToString("G3", CultureInfo.InvariantCulture)} can be missed)";
-        return $"flutter {flutter}; divergence {Divergence.ToString().ToLowerInvariant()}; {Decompositions.ToString(CultureInfo.InvariantCulture)} decompositions";
+            ? "complete, for the loop as computed and up to rounding"
+            : $"sampled{because} (an excursion narrower than {WidestStep.ToString("G3", CultureInfo.InvariantCulture)} can be missed)";
+        string evaluations = Evaluations > 0 ? Guard.Invariant($", {Evaluations} evaluations of the loop") : "";
+        string confirmed = Confirmed > 0 ? Guard.Invariant($"; {Guard.Count(Confirmed, "interval", "intervals")} confirmed by a second matrix") : "";
+        return $"flutter {flutter}; divergence {Divergence.ToString().ToLowerInvariant()}; {Guard.Count(Decompositions, "decomposition", "decompositions")}{evaluations}{confirmed}";
     }
+
+    internal static Completeness OfSearch(int decompositions, int evaluations, int confirmed)
+        => new(Coverage.Complete, Coverage.Complete, 0, decompositions, evaluations, confirmed, null);
+
+    internal static Completeness OfSweep(Coverage divergence, double widestStep, int decompositions, string? whySampled)
+        => new(Coverage.Sampled, divergence, widestStep, decompositions, 0, 0, whySampled);
 }

@@ -7,7 +7,8 @@ public sealed class GainInterval
 {
     [JsonConstructor]
     internal GainInterval(
-        double from, double to, StabilityVerdict atFrom, StabilityVerdict inside, StabilityVerdict atTo, RootCount count, ClosestApproach? leastDamped)
+        double from, double to, StabilityVerdict atFrom, StabilityVerdict inside, StabilityVerdict atTo, RootCount count, ClosestApproach? leastDamped,
+        ClosestApproach? largestGrowth)
     {
         From = from;
         To = to;
@@ -16,6 +17,7 @@ public sealed class GainInterval
         AtTo = atTo;
         Count = count;
         LeastDamped = leastDamped;
+        LargestGrowth = largestGrowth;
     }
 
     /// <summary>Lower end.</summary>
@@ -42,6 +44,12 @@ public sealed class GainInterval
     /// interval was not settled.
     /// </summary>
     public ClosestApproach? LeastDamped { get; }
+
+    /// <summary>
+    /// The root that grows fastest inside an unstable interval and where, among the gains sampled and refined: a hump if it is
+    /// small, an explosion if it is not. <see langword="null"/> elsewhere.
+    /// </summary>
+    public ClosestApproach? LargestGrowth { get; }
 
     /// <summary>Ends and verdict.</summary>
     public override string ToString() => BoundaryText.Of(this, UnitLabels.None, null);

@@ -27,9 +27,7 @@ public static class GainSweep
     {
         Guard.NotNull(path);
         options ??= new SweepOptions();
-        return options.MinimumStep <= options.MaximumStep
-            ? new SweepRun(path, options, progress, cancellation).Run()
-            : throw new ArgumentException(
-                Guard.Invariant($"The narrowest step {options.MinimumStep:R} is wider than the widest, {options.MaximumStep:R}."), nameof(options));
+        options.Check(nameof(options));
+        return new SweepRun(path, options, progress, cancellation).Run();
     }
 }

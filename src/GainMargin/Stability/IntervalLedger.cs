@@ -71,9 +71,12 @@ internal sealed class IntervalLedger
             var piece = pieces[i];
             var lower = i == 0 ? atFrom : AtCut(piece.From, pieces[i - 1], piece);
             var upper = i == pieces.Count - 1 ? atTo : AtCut(piece.To, piece, pieces[i + 1]);
+            bool insetFrom = i > 0 || IsApart(lower, piece);
+            bool insetTo = i < pieces.Count - 1 || IsApart(upper, piece);
             intervals.Add(new GainInterval(
                 piece.From, piece.To, lower, piece.Inside, upper, piece.Count,
-                piece.IsOpen ? null : LeastDamped(piece.From, piece.To, i > 0 || IsApart(lower, piece), i < pieces.Count - 1 || IsApart(upper, piece))));
+                piece.IsOpen ? null : Extreme(piece, insetFrom, insetTo, LeastDamped),
+                piece.Inside == StabilityVerdict.Unstable ? Extreme(piece, insetFrom, insetTo, Fastest) : null));
         }
 
         Intervals = intervals.ToImmutable();
@@ -108,10 +111,24 @@ internal sealed class IntervalLedger
 
     private bool SamplesAgree(Piece piece)
     {
-        double beside = SweepRun.Inset * _sweep.Path.Range.Width;
-        return piece.IsOpen || piece.Count.Undecided > 0 || _samples
-            .Where(s => s.Gain > piece.From + beside && s.Gain < piece.To - beside)
+        return piece.IsOpen || piece.Count.Undecided > 0 || Inside(piece.From, piece.To)
             .Select(s => s.Roots.Count).All(c => c.Undecided > 0 || c.Growing == piece.Count.Growing);
+    }
+
+    /// <summary>
+    /// Whether a sample inside counts otherwise than the middle, be it only because roots there cannot be told from the axis: a
+    /// crossing among them may have gone unseen.
+    /// </summary>
+    private bool IsDoubted(double from, double to, RootCount count) => Inside(from, to).Any(s => s.Roots.Count.Growing != count.Growing);
+
+    /// <summary>Samples between two gains, but for those so near to an end that is no end of the range that they count with it.</summary>
+    private IEnumerable<SweepSample> Inside(double from, double to)
+    {
+        var range = _sweep.Path.Range;
+        double beside = SweepRun.Inset * range.Width;
+        double low = from == range.From ? from : from + beside;
+        double high = to == range.To ? to : to - beside;
+        return _samples.Where(s => s.Gain > low && s.Gain < high);
     }
 
     private static bool IsApart(StabilityVerdict end, Piece piece) => end != piece.Inside || end == StabilityVerdict.Undecided;
@@ -157,7 +174,7 @@ internal sealed class IntervalLedger
                 below.Kind == CutKind.Onset ? from + inset : from, above.Kind == CutKind.Onset ? to - inset : to);
         }
 
-        return new Piece(from, to, count, _trusted ? verdict : StabilityVerdict.Undecided, false);
+        return new Piece(from, to, count, _trusted && !IsDoubted(from, to, count) ? verdict : StabilityVerdict.Undecided, false);
     }
 
     /// <summary>What ends an interval, ascending and apart; the ends of the range are the first and last.</summary>
@@ -195,7 +212,7 @@ internal sealed class IntervalLedger
         return _drafts.First(d => d.Gain == b).IsTogetherWith(first);
     }
 
-    private static StabilityOnset Counted(OnsetDraft draft, List<Piece> pieces)
+    private StabilityOnset Counted(OnsetDraft draft, List<Piece> pieces)
     {
         var below = pieces.LastOrDefault(p => !p.IsOpen && p.To <= draft.Gain + draft.Uncertainty, pieces[0]).Count;
         var above = pieces.FirstOrDefault(p => !p.IsOpen && p.From >= draft.Gain - draft.Uncertainty, pieces[^1]).Count;
@@ -207,7 +224,28 @@ internal sealed class IntervalLedger
         };
         return new StabilityOnset(
             draft.Gain, draft.Uncertainty, draft.Kind, direction, draft.Frequency, draft.Slope, draft.BackwardError,
-            draft.Right, draft.Left, below, above, draft.Energy);
+            draft.Right, draft.Left, below, above, draft.Energy, TimeToDouble(draft, pieces, above.Growing - below.Growing));
+    }
+
+    /// <summary>
+    /// Time in which the motion doubles one decibel past the onset, if the interval there reaches that far and the motion is the
+    /// only one that grows.
+    /// </summary>
+    private double? TimeToDouble(OnsetDraft draft, List<Piece> pieces, int change)
+    {
+        double gain = Decibel.Past(draft.Gain, change > 0);
+        bool beside = change > 0
+            ? pieces.Exists(p => p.From == draft.Gain && gain > p.From && gain < p.To && !p.IsOpen)
+            : pieces.Exists(p => p.To == draft.Gain && gain > p.From && gain < p.To && !p.IsOpen);
+        var (below, above) = (pieces.LastOrDefault(p => p.To <= draft.Gain), pieces.FirstOrDefault(p => p.From >= draft.Gain));
+        int growing = (change > 0 ? above : below)?.Count.Growing ?? 0;
+        if (change == 0 || !beside || growing > Math.Abs(change))
+        {
+            return null;
+        }
+
+        double growth = Fastest(gain, _sweep.RootsAt(gain)).Approach.Root.Real;
+        return growth > 0 ? Math.Log(2) / growth : null;
     }
 
     /// <summary>
@@ -232,12 +270,13 @@ internal sealed class IntervalLedger
             : StabilityVerdict.Marginal;
     }
 
-    /// <summary>Least damping, a little away from an end that has another verdict: damping vanishes there by itself.</summary>
-    private ClosestApproach LeastDamped(double from, double to, bool insetFrom, bool insetTo)
+    /// <summary>The least of a measure, a little away from an end that has another verdict.</summary>
+    private ClosestApproach Extreme(Piece piece, bool insetFrom, bool insetTo, Func<double, RootSet, (ClosestApproach Approach, double Measure)> measure)
     {
-        double low = from + (insetFrom ? BesideOnset * (to - from) : 0);
-        double high = to - (insetTo ? BesideOnset * (to - from) : 0);
-        var approaches = _samples.Where(s => s.Gain > low && s.Gain < high).Select(s => Worst(s.Gain, s.Roots)).ToList();
+        double low = piece.From + (insetFrom ? BesideOnset * (piece.To - piece.From) : 0);
+        double high = piece.To - (insetTo ? BesideOnset * (piece.To - piece.From) : 0);
+        (ClosestApproach Approach, double Measure) At(double gain) => measure(gain, _sweep.RootsAt(gain));
+        var approaches = _samples.Where(s => s.Gain > low && s.Gain < high).Select(s => measure(s.Gain, s.Roots)).ToList();
         if (approaches.Count < FewestSamples)
         {
             approaches = [.. Enumerable.Range(1, FewestSamples).Select(k => At(low + ((high - low) * k / (FewestSamples + 1))))];
@@ -245,52 +284,28 @@ internal sealed class IntervalLedger
 
         approaches.Insert(0, At(low));
         approaches.Add(At(high));
-        int least = 0;
-        for (int i = 1; i < approaches.Count; i++)
-        {
-            least = approaches[i].DampingRatio < approaches[least].DampingRatio ? i : least;
-        }
-
-        var best = approaches[least];
-        if (least == 0 || least == approaches.Count - 1)
-        {
-            return best;
-        }
-
-        double left = approaches[least - 1].Gain;
-        double right = approaches[least + 1].Gain;
-        for (int step = 0; step < RefiningSteps; step++)
-        {
-            bool wideLeft = best.Gain - left > right - best.Gain;
-            double at = best.Gain + (0.381966 * (wideLeft ? left - best.Gain : right - best.Gain));
-            var trial = At(at);
-            if (trial.DampingRatio < best.DampingRatio)
-            {
-                (left, right) = wideLeft ? (left, best.Gain) : (best.Gain, right);
-                best = trial;
-            }
-            else
-            {
-                (left, right) = wideLeft ? (at, right) : (left, at);
-            }
-        }
-
-        return best;
+        return Refinement.Least(approaches, a => a.Approach.Gain, a => a.Measure, At, RefiningSteps).Approach;
     }
 
-    private ClosestApproach At(double gain) => Worst(gain, _sweep.RootsAt(gain));
+    private (ClosestApproach Approach, double Measure) LeastDamped(double gain, RootSet roots)
+        => Worst(gain, roots, (s, i) => roots.VerdictOf(i) == StabilityVerdict.Undecided ? 0 : -s.Real / Complex.Abs(s));
 
-    private ClosestApproach Worst(double gain, RootSet roots)
+    private (ClosestApproach Approach, double Measure) Fastest(double gain, RootSet roots) => Worst(gain, roots, (s, _) => -s.Real);
+
+    private (ClosestApproach Approach, double Measure) Worst(double gain, RootSet roots, Func<Complex, int, double> measure)
     {
         int worst = -1;
         double least = double.PositiveInfinity;
         for (int i = 0; i < roots.Values.Length; i++)
         {
-            var s = roots.Values[i];
-            double ratio = roots.VerdictOf(i) == StabilityVerdict.Undecided ? 0 : -s.Real / Complex.Abs(s);
-            (worst, least) = ratio < least ? (i, ratio) : (worst, least);
+            double m = measure(Physical(roots.Values[i]), i);
+            (worst, least) = m < least ? (i, m) : (worst, least);
         }
 
-        return new ClosestApproach(gain, worst < 0 ? Complex.Zero : roots.Values[worst] * _sweep.Model.Rate, worst < 0 ? 0 : least);
+        var root = worst < 0 ? Complex.Zero : Physical(roots.Values[worst]);
+        bool undecided = worst >= 0 && roots.VerdictOf(worst) == StabilityVerdict.Undecided;
+        return (new ClosestApproach(gain, root, root == 0 || undecided ? 0 : -root.Real / Complex.Abs(root)), least);
     }
+
+    private Complex Physical(Complex root) => (root * _sweep.Model.Rate) - _sweep.Decay;
 }

@@ -17,7 +17,7 @@ internal sealed class OnsetEvidence(SweepModel sweep)
         return new OnsetDraft(
             crossing.Gain, crossing.Uncertainty, OnsetKind.Flutter, Frequency.Of(omega), crossing.Touches ? 0 : crossing.Slope.Real * sweep.Model.Rate,
             ModeMeasures.BackwardError(sweep.Model.Even.At(sweep.GainsAt(crossing.Gain)), new Complex(0, crossing.Omega), crossing.Right),
-            mode, Mode(crossing.Left), EnergyBalance.Of(sweep.Path.At(crossing.Gain), omega, [.. mode.Values]));
+            mode, Mode(crossing.Left), sweep.Decay == 0 ? EnergyBalance.Of(sweep.Path.At(crossing.Gain), omega, [.. mode.Values]) : null);
     }
 
     /// <summary>

@@ -1,8 +1,7 @@
 using System.Globalization;
 using System.Reflection;
 using System.Runtime.InteropServices;
-using System.Security.Cryptography;
-using System.Text;
+using GainMargin.Numerics;
 
 namespace GainMargin;
 
@@ -11,8 +10,15 @@ internal static class ProvenanceOf
 {
     public static string LibraryVersion { get; } = Version();
 
-    public static Provenance Sweep(GainPath path, SweepOptions options)
-        => new(LibraryVersion, "sampled sweep", HashOf(w => Write(w, path)), HashOf(w => Write(w, options)),
+    public static Provenance Sweep(GainPath path, SweepOptions options) => Of("sampled sweep", path, w => Write(w, options));
+
+    /// <summary>A sweep in place of the search that the options were made for.</summary>
+    public static Provenance Sweep(GainPath path, OnsetOptions options) => Of("sampled sweep", path, w => Write(w, options));
+
+    public static Provenance OneLoop(GainPath path, OnsetOptions options) => Of("complete search of one loop", path, w => Write(w, options));
+
+    private static Provenance Of(string method, GainPath path, Action<BinaryWriter> options)
+        => new(LibraryVersion, method, HashOf(w => Write(w, path)), HashOf(options),
             LinearAlgebraBackend.Current.Name, $"{RuntimeInformation.FrameworkDescription}, {RuntimeInformation.ProcessArchitecture}");
 
     private static string Version()
@@ -23,23 +29,12 @@ internal static class ProvenanceOf
 
     private static string HashOf(Action<BinaryWriter> write)
     {
-        using var stream = new MemoryStream();
-        using (var writer = new BinaryWriter(stream, Encoding.UTF8, leaveOpen: true))
-        {
-            write(writer);
-        }
-
-        return Convert.ToHexStringLower(SHA256.HashData(stream.ToArray()));
+        return Convert.ToHexStringLower(Hashing.Of(write));
     }
 
     private static void Write(BinaryWriter to, GainPath path)
     {
-        var structure = path.Nominal.Structure;
-        Write(to, structure.Mass);
-        Write(to, structure.Damping);
-        Write(to, structure.Stiffness);
-        Write(to, structure.Shapes);
-        Write(to, structure.ResidualFlexibility);
+        to.Write(path.Nominal.Structure.Hash);
         foreach (var setting in path.Nominal.Law.Loops)
         {
             var loop = setting.Loop;
@@ -59,36 +54,19 @@ internal static class ProvenanceOf
         Write(to, [path.Range.From, path.Range.To]);
     }
 
+    private static void Write(BinaryWriter to, OnsetOptions options)
+    {
+        Write(to, [options.DecayRate, options.MaximumEvaluations]);
+        to.Write(options.Confirm);
+        to.Write(options.Extremes);
+        Write(to, options.Sweep);
+    }
+
     private static void Write(BinaryWriter to, SweepOptions options)
     {
         Write(to, [options.MaximumStep, options.MinimumStep, options.MaximumDecompositions]);
         to.Write(options.KeepLoci);
     }
 
-    private static void Write(BinaryWriter to, NamedMatrix? matrix)
-    {
-        to.Write(matrix is not null);
-        if (matrix is null)
-        {
-            return;
-        }
-
-        foreach (string name in matrix.Rows.Concat(matrix.Columns))
-        {
-            to.Write(name);
-        }
-
-        double[] values = new double[matrix.Rows.Count * matrix.Columns.Count];
-        matrix.CopyRowMajorTo(values);
-        Write(to, values);
-    }
-
-    // A negative zero is the same input as zero.
-    private static void Write(BinaryWriter to, ReadOnlySpan<double> values)
-    {
-        foreach (double value in values)
-        {
-            to.Write(value == 0 ? 0.0 : value);
-        }
-    }
+    private static void Write(BinaryWriter to, ReadOnlySpan<double> values) => to.Write(Hashing.Bytes(values));
 }

@@ -18,9 +18,23 @@ internal sealed class SingularGains
 {
     private static readonly double[] ShiftFractions = [0.5, 0.381966, 0.618034, 0.145898, 0.854102, 0.034, 0.966, 0.0, 1.0];
 
-    private readonly SweepModel _sweep;
+    /// <summary>Relative error above which a value is not known at all.</summary>
+    private const double Unresolved = 0.1;
 
-    private SingularGains(SweepModel sweep) => _sweep = sweep;
+    /// <summary>Share of the range by which the search looks beyond its ends: what lies inside is known after polishing.</summary>
+    private const double Beyond = 1e-6;
+
+    /// <summary>Condition of the matrix at a shift below which no other is tried; zero is tried first, as small gains are known best from there.</summary>
+    private const double WellConditioned = 1e4;
+
+    private readonly SweepModel _sweep;
+    private readonly GainRange _range;
+
+    private SingularGains(SweepModel sweep, GainRange range)
+    {
+        _sweep = sweep;
+        _range = range;
+    }
 
     /// <summary>Whether the matrix is regular for almost every value; if not, nothing can be said of its singular values.</summary>
     public bool IsRegular { get; private set; } = true;
@@ -34,7 +48,9 @@ internal sealed class SingularGains
     /// their mass where they meet no damping either: <c>T = K + D·P₁ + M·P₂</c> with <c>Pᵢ = RᵢRᵢᵀM</c>, or
     /// <c>T = K + P₁ᵀD + P₂ᵀM</c> where they are known from their left side.
     /// </summary>
-    public static SingularGains Divergences(SweepModel sweep)
+    /// <param name="sweep">The path.</param>
+    /// <param name="range">Where to look.</param>
+    public static SingularGains Divergences(SweepModel sweep, GainRange range)
     {
         var even = sweep.Model.Even;
         var (drifting, free) = sweep.RigidProjections();
@@ -43,19 +59,21 @@ internal sealed class SingularGains
 
         if (!sweep.Permanent.OnLeft)
         {
-            return Run(even.Open.Stiffness + (even.Open.Damping * drifting) + (even.Open.Mass * free), sweep, (_, b) => b, Weighted, true);
+            return Run(even.Open.Stiffness + (even.Open.Damping * drifting) + (even.Open.Mass * free), sweep, range, (_, b) => b, Weighted, true);
         }
 
         var open = even.Open.Stiffness + drifting.TransposeThisAndMultiply(even.Open.Damping) + free.TransposeThisAndMultiply(even.Open.Mass);
-        return even.Residual is null ? Run(open, sweep, Weighted, (_, s) => s, false) : new SingularGains(sweep) { IsRegular = false };
+        return even.Residual is null ? Run(open, sweep, range, Weighted, (_, s) => s, false) : new SingularGains(sweep, range) { IsRegular = false };
     }
 
     /// <summary>Values at which a root passes through infinity.</summary>
-    public static SingularGains ThroughInfinity(SweepModel sweep)
-        => Run(sweep.Model.Even.Open.Mass, sweep, (_, b) => b, (ratio, s) => ratio.Acceleration * s, true);
+    /// <param name="sweep">The path.</param>
+    /// <param name="range">Where to look.</param>
+    public static SingularGains ThroughInfinity(SweepModel sweep, GainRange range)
+        => Run(sweep.Model.Even.Open.Mass, sweep, range, (_, b) => b, (ratio, s) => ratio.Acceleration * s, true);
 
     private static SingularGains Run(
-        Matrix<double> open, SweepModel sweep,
+        Matrix<double> open, SweepModel sweep, GainRange range,
         Func<FeedbackRatios, Vector<double>, Vector<double>> driven, Func<FeedbackRatios, Vector<double>, Vector<double>> sensed, bool ratioOnSensor)
     {
         var even = sweep.Model.Even;
@@ -77,7 +95,7 @@ internal sealed class SingularGains
         var zero = Dense.Zero(n, n);
         var unit = new FeedbackRatios[r];
         Array.Fill(unit, new FeedbackRatios { Position = 1 });
-        var gains = new SingularGains(sweep) { Matrices = new LoopedPencil(new QuadraticPencil(zero, zero, open), drive, sense, unit, residual) };
+        var gains = new SingularGains(sweep, range) { Matrices = new LoopedPencil(new QuadraticPencil(zero, zero, open), drive, sense, unit, residual) };
         gains.Search();
         return gains;
     }
@@ -91,13 +109,17 @@ internal sealed class SingularGains
             return;
         }
 
-        var range = _sweep.Path.Range;
         double shift = 0;
         Matrix<double>? flexibility = null;
         double smallest = double.PositiveInfinity;
-        foreach (double fraction in ShiftFractions)
+        double[] candidates = [.. ShiftFractions.Select(f => _range.From + (f * _range.Width))];
+        foreach (double at in _range.Contains(0) ? candidates.Prepend(0) : candidates)
         {
-            double at = range.From + (fraction * range.Width);
+            if (smallest < WellConditioned)
+            {
+                break;
+            }
+
             var (candidate, size) = FlexibilityAt(at, moving);
             if (candidate is not null && size < smallest)
             {
@@ -121,11 +143,25 @@ internal sealed class SingularGains
                 continue;
             }
 
-            double t = 1 / tau.Real;
-            double own = Math.Abs(t) * (system.Uncertainty[i] + Math.Abs(tau.Imaginary)) / Math.Abs(tau.Real);
-            if (shift + t + own >= range.From && shift + t - own <= range.To)
+            double error = system.Uncertainty[i] + Math.Abs(tau.Imaginary);
+            if (error > Unresolved * Math.Abs(tau.Real))
             {
-                found.Add(Polish(shift + t, own));
+                // A value that cannot be told from infinity: it matters only if it may lie in the range.
+                double reach = Math.Max(Math.Abs(_range.From - shift), Math.Abs(_range.To - shift));
+                IsRegular &= (Math.Abs(tau.Real) + error) * reach < 1;
+                continue;
+            }
+
+            double t = 1 / tau.Real;
+            double own = Math.Abs(t) * error / Math.Abs(tau.Real);
+            double slack = (10 * own) + (Beyond * _range.Width);
+            if (shift + t + slack >= _range.From && shift + t - slack <= _range.To)
+            {
+                var polished = Polish(shift + t, own);
+                if (polished.Gain + polished.Uncertainty >= _range.From && polished.Gain - polished.Uncertainty <= _range.To)
+                {
+                    found.Add(polished);
+                }
             }
         }
 

@@ -12,7 +12,7 @@ public sealed class StabilityBoundary
 {
     [JsonConstructor]
     internal StabilityBoundary(
-        string path, string? unit, UnitLabels units, double from, double to, double releaseGain,
+        string path, string? unit, UnitLabels units, double from, double to, double releaseGain, double requiredDecayRate,
         ImmutableArray<StabilityOnset> onsets, ImmutableArray<GainInterval> intervals, ImmutableArray<RootLocus> loci,
         Completeness completeness, ImmutableArray<Caution> cautions, Provenance provenance)
     {
@@ -22,6 +22,7 @@ public sealed class StabilityBoundary
         From = from;
         To = to;
         ReleaseGain = releaseGain;
+        RequiredDecayRate = requiredDecayRate;
         Onsets = onsets;
         Intervals = intervals;
         Loci = loci;
@@ -47,6 +48,12 @@ public sealed class StabilityBoundary
 
     /// <summary>The gain (or factor) at which the law stands.</summary>
     public double ReleaseGain { get; }
+
+    /// <summary>
+    /// Decay rate that was demanded, per unit of time; where it is not zero, onsets are gains at which a root reaches it, and
+    /// <em>stable</em> means that every root decays faster.
+    /// </summary>
+    public double RequiredDecayRate { get; }
 
     /// <summary>The onsets inside the range by ascending gain. What holds at the ends of the range is said by the first and last interval.</summary>
     public ImmutableArray<StabilityOnset> Onsets { get; }

@@ -9,7 +9,7 @@ public sealed class StabilityOnset
     internal StabilityOnset(
         double gain, double gainUncertainty, OnsetKind kind, CrossingDirection direction, Frequency frequency,
         double? growthRateSlope, double backwardError, NamedVector rightMode, NamedVector leftMode,
-        RootCount below, RootCount above, EnergyBalance? energy)
+        RootCount below, RootCount above, EnergyBalance? energy, double? timeToDouble)
     {
         Gain = gain;
         GainUncertainty = gainUncertainty;
@@ -23,6 +23,7 @@ public sealed class StabilityOnset
         Below = below;
         Above = above;
         Energy = energy;
+        TimeToDouble = timeToDouble;
     }
 
     /// <summary>The gain, in the unit of the path.</summary>
@@ -64,6 +65,12 @@ public sealed class StabilityOnset
 
     /// <summary>Energy balance over one cycle at a flutter onset; <see langword="null"/> where there is no cycle.</summary>
     public EnergyBalance? Energy { get; }
+
+    /// <summary>
+    /// Time in which the motion doubles one decibel past the onset, <c>ln 2/Re s</c>; <see langword="null"/> where the unstable
+    /// interval does not reach that far, where another motion grows already, or where growth was not looked for.
+    /// </summary>
+    public double? TimeToDouble { get; }
 
     /// <summary>Kind, gain, frequency and what changes.</summary>
     public override string ToString() => BoundaryText.Of(this, UnitLabels.None, null);

@@ -13,16 +13,23 @@ internal sealed class SweepModel
     private readonly double[][] _polynomials;
     private readonly CancellationToken _cancellation;
 
-    public SweepModel(GainPath path, CancellationToken cancellation)
+    /// <param name="path">The path.</param>
+    /// <param name="cancellation">Cancels between two decompositions.</param>
+    /// <param name="decay">Decay rate that every root is to have, in the time unit of the model; roots are moved right by it.</param>
+    public SweepModel(GainPath path, CancellationToken cancellation, double decay = 0)
     {
         Path = path;
+        Decay = decay;
         _cancellation = cancellation;
         _polynomials = Array.ConvertAll(path.GainPolynomials(), Trimmed);
-        Model = new NormalisedModel(path.Nominal.Pencil);
+        Model = new NormalisedModel(decay == 0 ? path.Nominal.Pencil : path.Nominal.Pencil.Decaying(decay));
         Permanent = FindPermanent();
     }
 
     public GainPath Path { get; }
+
+    /// <summary>Decay rate demanded; zero for stability alone.</summary>
+    public double Decay { get; }
 
     public NormalisedModel Model { get; }
 
@@ -87,6 +94,9 @@ internal sealed class SweepModel
             .Select(f => f.Verdict).FirstOrDefault(StabilityVerdict.Undecided);
     }
 
+    /// <summary>All roots at one value with the rigid motion of that value split off, straight from the decomposition.</summary>
+    public RootSet Decomposed(double value, RigidMotion rigid) => Counted(value, () => RootSet.Raw(Model, GainsAt(value), rigid));
+
     public RootSet RootsAt(double value) => Counted(value, () => RootSet.Polished(Model, GainsAt(value), Permanent, MostPolished));
 
     /// <summary>Projections <c>RRᵀM</c> onto drifting and free rigid motion, in evenly scaled coordinates.</summary>
@@ -102,7 +112,7 @@ internal sealed class SweepModel
     }
 
     /// <summary>Without leading zeros: a loop whose gain stays zero does not move.</summary>
-    private static double[] Trimmed(double[] polynomial)
+    public static double[] Trimmed(double[] polynomial)
     {
         int last = Array.FindLastIndex(polynomial, c => c != 0);
         return polynomial[..Math.Max(1, last + 1)];
@@ -119,7 +129,8 @@ internal sealed class SweepModel
         return sum;
     }
 
-    private ImmutableArray<DecidingFact> FactsAt(double value) => SplitFinder.Run(Path.At(value)).Facts;
+    /// <summary>The theorems are about stability, not about a decay rate.</summary>
+    private ImmutableArray<DecidingFact> FactsAt(double value) => Decay == 0 ? SplitFinder.Run(Path.At(value)).Facts : [];
 
     private T Counted<T>(double value, Func<T> solve)
     {
@@ -141,8 +152,8 @@ internal sealed class SweepModel
         bool[] moves = Array.ConvertAll(_polynomials, p => p.Length > 1);
         double[] held = [.. _polynomials.Select((p, k) => moves[k] ? 0 : p[0])];
         var hat = Model.ClosedHat(held);
-        var even = Model.Even.At(held).Stiffness;
-        var moduli = Model.Even.ModuliAt(held).Stiffness;
+        var even = Model.Even.At(held);
+        var moduli = Model.Even.ModuliAt(held);
         bool Positions(int k) => moves[k] && Model.Hat.Ratios[k].Position != 0;
         bool Rates(int k) => moves[k] && Model.Hat.Ratios[k].Rate != 0;
 
@@ -150,11 +161,16 @@ internal sealed class SweepModel
         {
             Matrix<double> Of(Matrix<double> a) => onLeft ? a.Transpose() : a;
             Matrix<double> Patterns(LoopedPencil pencil) => onLeft ? pencil.Drive : pencil.Sense;
-            var rows = Stacked(Of(even), Patterns(Model.Even), Positions);
-            var rowModuli = Stacked(Of(moduli), Patterns(Model.Even), Positions).PointwiseAbs();
+            Func<Matrix<double>, bool> MeetsNo(Matrix<double> matrix, Matrix<double> sizes, Func<int, bool> counts)
+            {
+                var rows = Stacked(Of(matrix), Patterns(Model.Even), counts);
+                var rowModuli = Stacked(Of(sizes), Patterns(Model.Even), counts).PointwiseAbs();
+                return basis => Model.IsAnnihilated(rows, rowModuli, basis);
+            }
+
             return RigidMotion.Find(
                 Stacked(Of(hat.Stiffness), Patterns(Model.Hat), Positions), Stacked(Of(hat.Damping), Patterns(Model.Hat), Rates), onLeft,
-                basis => Model.IsAnnihilated(rows, rowModuli, basis));
+                MeetsNo(even.Stiffness, moduli.Stiffness, Positions), MeetsNo(even.Damping, moduli.Damping, Rates));
         }
 
         return RigidMotion.Larger(Side(onLeft: false), Side(onLeft: true));

@@ -33,4 +33,12 @@ public sealed record SweepOptions
 
     /// <summary>Whether the result keeps all root loci, by default yes: they are what one plots.</summary>
     public bool KeepLoci { get; init; } = true;
+
+    internal void Check(string parameter)
+    {
+        if (MinimumStep > MaximumStep)
+        {
+            throw new ArgumentException(Guard.Invariant($"The narrowest step {MinimumStep:R} is wider than the widest, {MaximumStep:R}."), parameter);
+        }
+    }
 }

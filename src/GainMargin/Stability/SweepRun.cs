@@ -17,20 +17,33 @@ internal sealed class SweepRun
     private readonly SweepModel _sweep;
     private FlutterSearch _search;
 
-    public SweepRun(GainPath path, SweepOptions options, IProgress<FinderProgress>? progress, CancellationToken cancellation)
+    private readonly OnsetOptions? _instead;
+    private readonly string? _whySampled;
+
+    /// <param name="path">The path.</param>
+    /// <param name="options">How finely to sample.</param>
+    /// <param name="progress">Receives the progress.</param>
+    /// <param name="cancellation">Cancels.</param>
+    /// <param name="instead">Options of the complete search that this sweep takes the place of.</param>
+    /// <param name="whySampled">Why that search was not possible.</param>
+    public SweepRun(
+        GainPath path, SweepOptions options, IProgress<FinderProgress>? progress, CancellationToken cancellation,
+        OnsetOptions? instead = null, string? whySampled = null)
     {
+        _instead = instead;
+        _whySampled = whySampled;
         _path = path;
         _options = options;
         _progress = progress;
-        _sweep = new SweepModel(path, cancellation);
+        _sweep = new SweepModel(path, cancellation, instead?.DecayRate ?? 0);
         _search = new FlutterSearch(_sweep, options, Settled);
     }
 
     public StabilityBoundary Run()
     {
         Report("barriers", 0);
-        var divergences = SingularGains.Divergences(_sweep);
-        var infinities = SingularGains.ThroughInfinity(_sweep);
+        var divergences = SingularGains.Divergences(_sweep, _path.Range);
+        var infinities = SingularGains.ThroughInfinity(_sweep, _path.Range);
         var evidence = new OnsetEvidence(_sweep);
         IntervalLedger ledger;
         List<GainStretch> stretches;
@@ -57,12 +70,13 @@ internal sealed class SweepRun
         Report("done", 1);
         bool singularSetsAreComplete = divergences.IsRegular && infinities.IsRegular;
         return new StabilityBoundary(
-            _path.ToString(), _path.Unit, _path.Nominal.Structure.Units, _path.Range.From, _path.Range.To, _path.ReleaseValue,
+            _path.ToString(), _path.Unit, _path.Nominal.Structure.Units, _path.Range.From, _path.Range.To, _path.ReleaseValue, _sweep.Decay,
             ledger.Onsets, ledger.Intervals, _options.KeepLoci ? LocusBuilder.Run(_search.Steps, _sweep.Model.Rate) : [],
-            new Completeness(
-                Coverage.Sampled, singularSetsAreComplete ? Coverage.Complete : Coverage.Sampled,
-                _search.Steps.Select(s => s.Right.Gain - s.Left.Gain).DefaultIfEmpty(_path.Range.Width).Max(), _sweep.Decompositions),
-            CautionFinder.Run(_sweep, ledger, stretches, singularSetsAreComplete), ProvenanceOf.Sweep(_path, _options));
+            Completeness.OfSweep(
+                singularSetsAreComplete ? Coverage.Complete : Coverage.Sampled,
+                _search.Steps.Select(s => s.Right.Gain - s.Left.Gain).DefaultIfEmpty(_path.Range.Width).Max(), _sweep.Decompositions, _whySampled),
+            CautionFinder.OfSweep(_sweep, ledger, stretches, singularSetsAreComplete),
+            _instead is null ? ProvenanceOf.Sweep(_path, _options) : ProvenanceOf.Sweep(_path, _instead));
     }
 
     private IntervalLedger Ledger(
@@ -91,10 +105,16 @@ internal sealed class SweepRun
         SweepSample? before = null;
         foreach (var barrier in barriers)
         {
-            double inset = Math.Max(Inset * range.Width, 4 * barrier.Uncertainty);
+            double own = Math.Max(Math.Abs(barrier.Gain), Math.Abs(_path.ReleaseValue));
+            double narrow = Inset * (own > 0 ? Math.Min(own, range.Width) : range.Width);
+            double inset = Math.Max(narrow, 4 * barrier.Uncertainty);
             if (barrier.Gain - inset > from)
             {
                 before = Piece(before, from, barrier.Gain - inset);
+            }
+            else if (inset > narrow)
+            {
+                _search.Open.Add(new GainStretch(from, Math.Min(range.To, barrier.Gain + inset)));
             }
 
             from = Math.Max(from, barrier.Gain + inset);

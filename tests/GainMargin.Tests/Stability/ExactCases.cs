@@ -63,6 +63,57 @@ internal sealed record ExactCase(int Order, double[] Mass, double[] Damping, dou
         }
     }
 
+    /// <summary>
+    /// Diagonal structures of the kinds that random matrices never are: equal modes, damped and undamped ones side by side,
+    /// free and drifting bodies, critical and strong overdamping, negative stiffness; sensors and actuators that miss some.
+    /// </summary>
+    public static ExactCase Special(int seed)
+    {
+        var random = new Random(seed);
+        int n = 1 + random.Next(3);
+        double Pick(params double[] values) => values[random.Next(values.Length)];
+        double[] mass = new double[n];
+        double[] damping = new double[n];
+        double[] stiffness = new double[n];
+        for (int i = 0; i < n; i++)
+        {
+            bool twin = i > 0 && random.Next(2) == 0;
+            mass[i] = Pick(1, 1, 1, 2, 0.75);
+            stiffness[i] = twin ? stiffness[i - 1] : Pick(0, 0.25, 1, 2.75, 1e-6, 1e6, -0.375);
+            damping[i] = twin && random.Next(2) == 0 ? damping[i - 1]
+                : Pick(0, 0.375, Math.ScaleB(1, -26), Math.ScaleB(1, -45), 64, 1 << 20, 2 * Math.Sqrt(Math.Abs(stiffness[i])), -0.0625);
+        }
+
+        double Weight() => Pick(0, 1, 1, -1, 2, Math.ScaleB(1, -30));
+        double[] Weights()
+        {
+            double[] p = [.. Enumerable.Range(0, n).Select(_ => Weight())];
+            return p.All(x => x == 0) ? [1, .. p.Skip(1)] : p;
+        }
+
+        double[] drive = Weights();
+        double[] sense = random.Next(4) == 0 ? drive : Weights();
+        var ratios = random.Next(5) switch
+        {
+            0 => new FeedbackRatios { Position = 1 },
+            1 => new FeedbackRatios { Rate = 1 },
+            2 => new FeedbackRatios { Position = 1, Rate = Pick(0.5, -0.015625) },
+            3 => new FeedbackRatios { Acceleration = 1 },
+            _ => new FeedbackRatios { Position = 1, Rate = Pick(0, 0.25), Acceleration = Pick(0.8125, -0.25) },
+        };
+        double reach = Math.ScaleB(1, random.Next(-6, 8));
+        var (from, to) = random.Next(4) switch
+        {
+            0 => (0, reach),
+            1 => (-reach, 0),
+            2 => (0.25 * reach, reach),
+            _ => (-0.9375 * reach, reach),
+        };
+        return new ExactCase(n, Diagonal(mass), Diagonal(damping), Diagonal(stiffness), drive, sense, ratios, GainRange.Between(from, to));
+    }
+
+    private static double[] Diagonal(double[] d) => [.. Enumerable.Range(0, d.Length * d.Length).Select(k => k / d.Length == k % d.Length ? d[k / d.Length] : 0)];
+
     public ExactScreening Exact() => new(
         Order, Mass, Outer(Ratios.Acceleration), Damping, Outer(Ratios.Rate), Stiffness, Outer(Ratios.Position));
 

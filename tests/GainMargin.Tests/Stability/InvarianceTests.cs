@@ -3,23 +3,35 @@ using MathNet.Numerics.LinearAlgebra.Double;
 
 namespace GainMargin.Tests.Stability;
 
+/// <summary>Invariance of the sweep.</summary>
+public sealed class SweepInvarianceTests : InvarianceTests
+{
+    private protected override StabilityBoundary Find(GainPath path) => GainSweep.Run(path);
+}
+
+/// <summary>Invariance of the search without sampling.</summary>
+public sealed class SearchInvarianceTests : InvarianceTests
+{
+    private protected override StabilityBoundary Find(GainPath path) => OnsetFinder.FindAll(path);
+}
+
 /// <summary>What must not change the answer: units, order of the degrees of freedom, a mode nobody sees, two signs at once.</summary>
-public sealed class InvarianceTests
+public abstract class InvarianceTests
 {
     private const int Seeds = 25;
     private static readonly DofNames Names = ["a", "b", "c", "d"];
 
     private sealed record Model(Matrix<double> Mass, Matrix<double> Damping, Matrix<double> Stiffness, double[] Drive, double[] Sense, double GainScale = 1)
     {
-        public StabilityBoundary Boundary(double reach = 24)
+        public GainPath Path(double reach = 24)
         {
             var names = DofNames.Of([.. Enumerable.Range(0, Drive.Length).Select(i => $"q{i}")]);
             var loop = FeedbackLoop.Create(
                 "g", Sensor.Weighted([.. Sense.Select((s, i) => new PatternWeight(names[i], s))]),
                 Actuator.Weighted([.. Drive.Select((b, i) => new PatternWeight(names[i], b))]), Ratios);
             var structure = ElasticStructure.FromMatrices(new StructureMatrices { Dofs = names, Mass = Mass, Damping = Damping, Stiffness = Stiffness });
-            return GainSweep.Run(GainPath.OneLoop(
-                ClosedLoop.Create(structure, ControlLaw.Of(new LoopSetting(loop, 0.1 * reach, DisplayScale: GainScale))), "g", GainRange.Between(-reach, reach)));
+            return GainPath.OneLoop(
+                ClosedLoop.Create(structure, ControlLaw.Of(new LoopSetting(loop, 0.1 * reach, DisplayScale: GainScale))), "g", GainRange.Between(-reach, reach));
         }
 
         public FeedbackRatios Ratios { get; init; } = new() { Position = 1, Rate = 0.05 };
@@ -48,7 +60,7 @@ public sealed class InvarianceTests
     [Fact]
     public void Random_TheseSeeds_HaveOnsetsOfBothKinds()
     {
-        var onsets = Enumerable.Range(1, Seeds).SelectMany(seed => Random(seed).Boundary().Onsets).ToList();
+        var onsets = Enumerable.Range(1, Seeds).SelectMany(seed => Find(Random(seed).Path()).Onsets).ToList();
 
         Assert.InRange(onsets.Count(o => o.Kind == OnsetKind.Flutter), 20, 200);
         Assert.InRange(onsets.Count(o => o.Kind == OnsetKind.Divergence), 10, 100);
@@ -70,7 +82,7 @@ public sealed class InvarianceTests
             Sense = [.. model.Sense.Select((s, i) => s * scale[i, i])],
         };
 
-        AssertSame(model.Boundary(), scaled.Boundary());
+        AssertSame(model.Path(), scaled.Path());
     }
 
     [Theory]
@@ -88,7 +100,7 @@ public sealed class InvarianceTests
                 Ratios = new FeedbackRatios { Position = unit * unit * model.Ratios.Position, Rate = unit * model.Ratios.Rate },
             };
 
-            AssertSame(model.Boundary(), scaled.Boundary(), unit);
+            AssertSame(model.Path(), scaled.Path(), unit);
         }
     }
 
@@ -108,7 +120,7 @@ public sealed class InvarianceTests
                 GainScale = unit,
             };
 
-            AssertSame(model.Boundary(), scaled.Boundary());
+            AssertSame(model.Path(), scaled.Path());
         }
     }
 
@@ -122,8 +134,8 @@ public sealed class InvarianceTests
             Matrix<double> Reordered(Matrix<double> a) => DenseMatrix.Create(4, 4, (i, j) => a[order[i], order[j]]);
             double[] Shuffled(double[] a) => [.. order.Select(i => a[i])];
 
-            AssertSame(model.Boundary(), new Model(
-                Reordered(model.Mass), Reordered(model.Damping), Reordered(model.Stiffness), Shuffled(model.Drive), Shuffled(model.Sense)).Boundary());
+            AssertSame(model.Path(), new Model(
+                Reordered(model.Mass), Reordered(model.Damping), Reordered(model.Stiffness), Shuffled(model.Drive), Shuffled(model.Sense)).Path());
         }
     }
 
@@ -135,8 +147,8 @@ public sealed class InvarianceTests
             var model = Random(seed);
             Matrix<double> Grown(Matrix<double> a, double own) => DenseMatrix.Create(5, 5, (i, j) => i < 4 && j < 4 ? a[i, j] : i == j ? own : 0);
 
-            AssertSame(model.Boundary(), new Model(
-                Grown(model.Mass, 1), Grown(model.Damping, 0.05), Grown(model.Stiffness, 7), [.. model.Drive, 0.3], [.. model.Sense, 0]).Boundary());
+            AssertSame(model.Path(), new Model(
+                Grown(model.Mass, 1), Grown(model.Damping, 0.05), Grown(model.Stiffness, 7), [.. model.Drive, 0.3], [.. model.Sense, 0]).Path());
         }
     }
 
@@ -147,14 +159,17 @@ public sealed class InvarianceTests
         {
             var model = Random(seed);
 
-            AssertSame(model.Boundary(), (model with { Sense = [.. model.Sense.Select(s => -s)], GainScale = -1 }).Boundary());
+            AssertSame(model.Path(), (model with { Sense = [.. model.Sense.Select(s => -s)], GainScale = -1 }).Path());
         }
     }
 
     private static Matrix<double> Symmetric(Matrix<double> a) => 0.5 * (a + a.Transpose());
 
-    private static void AssertSame(StabilityBoundary expected, StabilityBoundary actual, double timeUnit = 1)
+    private protected abstract StabilityBoundary Find(GainPath path);
+
+    private void AssertSame(GainPath reference, GainPath changed, double timeUnit = 1)
     {
+        var (expected, actual) = (Find(reference), Find(changed));
         Assert.Equal(expected.Onsets.Select(o => (o.Kind, o.Direction)), actual.Onsets.Select(o => (o.Kind, o.Direction)));
         Assert.Equal(expected.Intervals.Select(i => (i.Inside, i.AtFrom, i.AtTo)), actual.Intervals.Select(i => (i.Inside, i.AtFrom, i.AtTo)));
         foreach (var (wanted, found) in expected.Onsets.Zip(actual.Onsets))

@@ -281,6 +281,49 @@ public sealed class OutcomeTests
             GainSweep.Run(Boundaries.Flutter()).Cautions,
             c => c.Kind == CautionKind.LinearScreening && c.Text.Contains("not a clearance", StringComparison.Ordinal));
 
+    // Two equal masses and springs: K = [[2, g − 1], [−1, 2]], μ = 2 ± √(1 − g).
+    [Fact]
+    public void FindAll_UndampedLoop_LosslessCoalescenceWithTheWarning()
+    {
+        var structure = ElasticStructure.FromRowMajor(["x", "y"], [1, 0, 0, 1], [0, 0, 0, 0], [2, -1, -1, 2]);
+
+        var boundary = OnsetFinder.FindAll(Boundaries.Path(structure, Boundaries.Loop("g", "y", "x", new() { Position = 1 }, 0.5), -4, 4));
+
+        Assert.Equal([OnsetKind.Divergence, OnsetKind.LosslessCoalescence], boundary.Onsets.Select(o => o.Kind));
+        Assert.Equal([-3, 1], boundary.Onsets.Select(o => o.Gain), (a, b) => Math.Abs(a - b) < 1e-13);
+        Assert.Equal(Math.Sqrt(2), boundary.Onsets[1].Frequency.Radians, 1e-12);
+        Assert.Null(boundary.Onsets[1].GrowthRateSlope);
+        Assert.Equal([StabilityVerdict.Unstable, StabilityVerdict.Marginal, StabilityVerdict.Unstable], boundary.Intervals.Select(i => i.Inside));
+        Assert.Contains(boundary.Cautions, c => c.Kind == CautionKind.LosslessLoop);
+        Assert.Equal(Coverage.Complete, boundary.Completeness.Flutter);
+    }
+
+    [Theory]
+    [InlineData(-0.5, true)]
+    [InlineData(-0.75, false)]
+    public void FindAll_StiffnessEntryMistyped_StiffnessNotSymmetricIsNamed(double entry, bool named)
+    {
+        var structure = ElasticStructure.FromRowMajor(["x", "y"], [1, 0, 0, 1], [0.1, 0, 0, 0.1], [1, -0.75, entry, 1]);
+
+        foreach (var boundary in new[] { OnsetFinder.FindAll(Over(structure)), GainSweep.Run(Over(structure)) })
+        {
+            Assert.Equal(named, boundary.Cautions.Any(c => c.Kind == CautionKind.StiffnessNotSymmetric));
+        }
+
+        static GainPath Over(ElasticStructure structure) => Boundaries.Path(structure, Boundaries.Loop("g", "x", "x", new() { Rate = 1 }, 0.5), 0, 1);
+    }
+
+    [Fact]
+    public void FindAll_UndampedModeAtANode_UnseenModeIsNamed()
+    {
+        var structure = ElasticStructure.FromRowMajor(["x", "y"], [1, 0, 0, 1], [0.1, 0, 0, 0], [1, 0, 0, 9]);
+
+        var boundary = OnsetFinder.FindAll(Boundaries.Path(structure, Boundaries.Loop("g", "x", "x", new() { Rate = 1 }, 0.5), 0, 1));
+
+        Assert.Contains(boundary.Cautions, c => c.Kind == CautionKind.UnseenMode);
+        Assert.Equal(StabilityVerdict.Marginal, Assert.Single(boundary.Intervals).Inside);
+    }
+
     [Fact]
     public void Outcomes_EveryMember_IsNamedInThisFile()
     {

@@ -12,6 +12,34 @@ public sealed class WideAgreementTests
 {
     private const int Gains = 40;
 
+    /// <summary>Sweep and search share the verdicts' code only in part.</summary>
+    [Fact]
+    public void FindAll_WideStructures_HasEveryOnsetOfTheSweep()
+    {
+        int seeds = Seeds.Count(60);
+        int complete = 0;
+        for (int seed = 1; seed <= seeds; seed++)
+        {
+            var path = WideCases.Path(seed, most: 20);
+            var found = OnsetFinder.FindAll(path);
+            if (found.Completeness.Flutter != Coverage.Complete)
+            {
+                continue;
+            }
+
+            complete++;
+            var searched = found.Intervals.Where(i => i.Inside != StabilityVerdict.Undecided).ToArray();
+            foreach (var onset in GainSweep.Run(path).Onsets.Where(o => searched.Any(i => o.Gain >= i.From && o.Gain <= i.To)))
+            {
+                Assert.True(
+                    found.Onsets.Any(o => Math.Abs(o.Gain - onset.Gain) <= (1e-9 * path.Range.Width) + (10 * (o.GainUncertainty + onset.GainUncertainty))),
+                    $"seed {seed}: the sweep found {onset}, the search did not");
+            }
+        }
+
+        Assert.True(complete > 0.95 * seeds, $"complete in {complete} of {seeds} cases");
+    }
+
     [Fact]
     public void VerdictAt_GainsNotSampled_AgreesWithTheSpectrumThere()
     {
