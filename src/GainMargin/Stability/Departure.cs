@@ -62,7 +62,9 @@ internal static class Departure
             .Where(k => terms.Pairs.SquareOf(k) == 0).MinBy(k => Math.Abs(terms.Pairs.CenterOf(k) - square));
         double offset = 0;
         var cleared = terms.Function().Over(anchor, offset, 0, clear: true).Sought;
-        double ratio = terms.Law.Position - (terms.Law.Acceleration * terms.Pairs.CenterOf(anchor));
+
+        // An acceleration alone is taken without its factor −z, and so is its ratio.
+        double ratio = terms.Law.Position == 0 ? terms.Law.Acceleration : terms.Law.Position - (terms.Law.Acceleration * terms.Pairs.CenterOf(anchor));
         return Math.Abs(cleared.Slope) <= cleared.SlopeRounding || ratio == 0 ? null : cleared.Slope * ratio * pole.Coupling;
     }
 }

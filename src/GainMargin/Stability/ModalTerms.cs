@@ -101,16 +101,25 @@ internal static class ModalTerms
         bool othersOpen = Array.TrueForAll(held, g => g == 0);
         double stiffnessError = Tolerances.Backward(n, Dense.Norm(closed.Stiffness));
         double dampingError = Tolerances.Backward(n, Dense.Norm(closed.Damping));
-        double couplingError = Tolerances.Backward(n, drive.L2Norm() * sense.L2Norm());
+        var driven = shapes.TransposeThisAndMultiply(drive);
+        var sensed = shapes.TransposeThisAndMultiply(sense);
+
+        // Rounding turns a shape towards its neighbours, the more the nearer they are.
+        double Blur(int i, Vector<double> patterns, double size)
+            => Tolerances.Backward(n, size) + Enumerable.Range(0, n).Where(j => kappa[j] != kappa[i]).Sum(j => stiffnessError / Math.Abs(kappa[j] - kappa[i]) * Math.Abs(patterns[j]));
+
         LoopMode Mode(int i)
         {
-            double b = shapes.Column(i) * drive;
-            double s = shapes.Column(i) * sense;
-            bool seen = Math.Abs(b) > Tolerances.Backward(n, drive.L2Norm()) && Math.Abs(s) > Tolerances.Backward(n, sense.L2Norm());
+            double b = driven[i];
+            double s = sensed[i];
+            double errorOfDrive = Blur(i, driven, drive.L2Norm());
+            double errorOfSense = Blur(i, sensed, sense.L2Norm());
+            double error = (errorOfDrive * (Math.Abs(s) + errorOfSense)) + (errorOfSense * Math.Abs(b));
+            bool seen = Math.Abs(b * s) > error;
             bool free = kappa[i] == 0;
             return new LoopMode(
                 damping[i, i], kappa[i], seen ? b * s : 0, dampingError, free ? 0 : stiffnessError,
-                (b == 0 || s == 0) && othersOpen ? 0 : couplingError, seen);
+                (b == 0 || s == 0) && othersOpen ? 0 : seen ? error : error + Math.Abs(b * s), seen);
         }
 
         LoopMode[] modes = [.. Enumerable.Range(0, n).Select(Mode)];

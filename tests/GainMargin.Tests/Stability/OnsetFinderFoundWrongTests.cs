@@ -20,13 +20,17 @@ public sealed class OnsetFinderFoundWrongTests
         "twins, one barely damped" => Case([1, 1], [1e-9, 0], [2.75, 2.75], [1, 2], [1, 1], new() { Position = 1, Rate = -1.0 / 64 }, -0.125, 0.125),
         "triplets, barely damped" => Case(
             [1, 1, 1], [2.2351741790771484e-8, 9.5367431640625e-7, 0], [2.25, 2.25, 2.25], [0, 1, 2], [2, 1, -1], new() { Rate = 0.109375, Acceleration = 1 }, -30, 32),
+        "an acceleration alone on an undamped mode" => Case(
+            [1, 1], [0, 0.25], [1, 0.5], [1, 1], [1, 1], new() { Acceleration = 1 }, -0.125, -1.0 / 1024),
+        "the same beside negative damping" => Case([1, 1], [0, -0.0625], [1, 2], [1, 1], [1, -1], new() { Acceleration = 1 }, 1.0 / 1024, 0.125),
         "an open band" => Case([1, 1], [1.74999999999825, 1.09375], [0.765625, 0.765625], [-1, 2], [2, 1], new() { Position = 1, Acceleration = 0.8125 }, -7.5, 8),
         _ => Case([1, 1], [0, 2.5], [0.125, -0.375], [1, 2], [1, -1], new() { Rate = 0.15625, Acceleration = 1 }, -128, 128),
     };
 
     public static TheoryData<string> Cases =>
     [
-        "an unseen twin of the mode that flutters", "the same, base inside", "twins, one barely damped", "triplets, barely damped", "an open band", "a loss through infinity",
+        "an unseen twin of the mode that flutters", "the same, base inside", "twins, one barely damped", "triplets, barely damped", "an acceleration alone on an undamped mode",
+        "the same beside negative damping", "an open band", "a loss through infinity",
     ];
 
     [Theory]
@@ -89,6 +93,17 @@ public sealed class OnsetFinderFoundWrongTests
 
         Assert.Equal(beyond > 0 ? StabilityVerdict.Unstable : StabilityVerdict.Stable, boundary.Intervals[0].AtFrom);
         Assert.Equal(StabilityVerdict.Stable, boundary.Intervals[^1].AtTo);
+    }
+
+    // Coupling of a mode that is all rounding, turned up by a neighbour's: its sign must not decide.
+    [Fact]
+    public void FindAll_CouplingBelowTheRoundingOfTheShapes_IsNotTrusted()
+    {
+        var (path, family) = LoopFamilies.Path(74697);
+
+        var audit = BoundaryAudit.Of(74697, family, path, p => OnsetFinder.FindAll(p));
+
+        Assert.Empty(audit.Complaints);
     }
 
     private static void AssertReleaseIsRight(StabilityBoundary boundary, ExactScreening exact)
