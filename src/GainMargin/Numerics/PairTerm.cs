@@ -11,8 +11,10 @@ namespace GainMargin.Numerics;
 /// <param name="Imaginary1"><c>I₁</c>.</param>
 /// <param name="Modulus"><c>|λ|²</c> of the poles.</param>
 /// <param name="Weight">Modulus of the residue times the uncertainty of the pole, with a factor.</param>
+/// <param name="ResidueError">Error of the residue.</param>
 internal readonly record struct PairTerm(
-    double Center, double Square, double Real0, double Real1, double Imaginary0, double Imaginary1, double Modulus, double Weight)
+    double Center, double Square, double Real0, double Real1, double Imaginary0, double Imaginary1, double Modulus, double Weight,
+    double ResidueError = 0)
 {
     /// <summary>Covers the change of numerators and denominator together, from zero frequency to infinity.</summary>
     private const double Moved = 16;

@@ -15,7 +15,7 @@ internal sealed class PairTerms : IPairFactor
     /// <summary>Largest radius of a Taylor polynomial, in distances to the nearest pole.</summary>
     private const double LargestRatio = 0.5;
 
-    private readonly double[] _center, _square, _spread, _real0, _real1, _imaginary0, _imaginary1, _weight, _size;
+    private readonly double[] _center, _square, _spread, _real0, _real1, _imaginary0, _imaginary1, _weight, _size, _error;
 
     private PairTerms(IReadOnlyList<PairTerm> terms, double constant)
     {
@@ -43,6 +43,7 @@ internal sealed class PairTerms : IPairFactor
         _imaginary1 = Column(t => t.Imaginary1, 0);
         _weight = Column(t => t.Weight, 0);
         _size = Column(t => Math.Sqrt(t.Modulus), 0);
+        _error = Column(t => t.ResidueError, 0);
     }
 
     public int Count { get; }
@@ -64,6 +65,7 @@ internal sealed class PairTerms : IPairFactor
                     Real1 = sum[^1].Real1 + term.Real1,
                     Imaginary1 = sum[^1].Imaginary1 + term.Imaginary1,
                     Weight = sum[^1].Weight + term.Weight,
+                    ResidueError = sum[^1].ResidueError + term.ResidueError,
                 };
             }
             else
@@ -120,7 +122,8 @@ internal sealed class PairTerms : IPairFactor
     /// <remarks>
     /// With the nearest root of a denominator at distance <c>δ</c> from the cell: <c>|1/P|′ ≤ 2/δ³</c>, <c>|1/P|″ ≤ 6/δ⁴</c>, and as <c>t/P</c> is the
     /// mean of <c>1/(z − ζ)</c> over both roots, <c>|t/P|′ ≤ 1/δ²</c>, <c>|t/P|″ ≤ 2/δ³</c>. A pole known to <c>δλ</c> moves a term with residue <c>r</c>
-    /// by no more than <c>|r|δλ(√z + |λ|)²/P</c>; its weight is that with a factor.
+    /// by no more than <c>|r|δλ(√z + |λ|)²/P</c>; its weight is that with a factor. A residue known to <c>δr</c> changes <c>R</c> by no more than
+    /// <c>2δr(√z + |λ|)/√P</c> and <c>I</c> by <c>8δr/√P</c>.
     /// </remarks>
     /// <returns>The pair, and one over the distance from the cell to the nearest pole.</returns>
     public (RealPair Pair, double Nearness) Over(double origin, double offset, double radius, int without)
@@ -172,10 +175,12 @@ internal sealed class PairTerms : IPairFactor
             var moved = new Vector<double>(_weight, k) * inverseModulus * size;
             realModuli += realSize;
             imagModuli += imagSize;
-            realMoved += moved * size;
-            imagMoved += moved;
-            realTurned += (moved * size * two * near) + (((a0 * near3) + (a1 * near2)) * Tolerances.Entry);
-            imagTurned += (moved * two * near) + (((b0 * near3) + (b1 * near2)) * Tolerances.Entry);
+            var missed = two * new Vector<double>(_error, k) * Vector.SquareRoot(inverseModulus);
+            var (realMissed, imagMissed) = (missed * size, missed * new Vector<double>(4.0));
+            realMoved += (moved * size) + realMissed;
+            imagMoved += moved + imagMissed;
+            realTurned += (((moved * size) + realMissed) * two * near) + (((a0 * near3) + (a1 * near2)) * Tolerances.Entry);
+            imagTurned += ((moved + imagMissed) * two * near) + (((b0 * near3) + (b1 * near2)) * Tolerances.Entry);
             nearest = Vector.Max(nearest, near);
         }
 

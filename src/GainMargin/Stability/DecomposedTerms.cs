@@ -70,8 +70,18 @@ internal static class DecomposedTerms
         double scale = sweep.Polynomials[loop][1];
         var residues = roots.Solution.Residues(loop);
         var builder = new LoopTermsBuilder();
-        builder.AddZeroRoots(roots.Rigid.ZeroRoots, scale * zero.Simple, scale * zero.Double);
-        var real = new List<(double Pole, double Residue, double Uncertainty)>();
+        double blur = Enumerable.Range(0, residues.Length).Select(i => roots.Uncertainty[i] / Complex.Abs(roots.Values[i])).DefaultIfEmpty(0).Max();
+        builder.AddZeroRoots(roots.Rigid.ZeroRoots, scale * zero.Simple, scale * zero.Double, blur);
+        var real = new List<(double Pole, double Residue, double Uncertainty, double Error)>();
+
+        // Rounding turns a root's vectors, and so its residue, the more the nearer another root is.
+        double ErrorOf(int i)
+        {
+            double gap = Enumerable.Range(0, residues.Length).Where(j => j != i).Select(j => Complex.Abs(roots.Values[i] - roots.Values[j]))
+                .Append(roots.Rigid.ZeroRoots > 0 ? Complex.Abs(roots.Values[i]) : double.PositiveInfinity).Min();
+            return Complex.Abs(scale * residues[i].Value) * Math.Min(1, roots.Uncertainty[i] / gap);
+        }
+
         for (int i = 0; i < residues.Length; i++)
         {
             var pole = roots.Values[i];
@@ -102,11 +112,11 @@ internal static class DecomposedTerms
             }
             else if (pole.Imaginary == 0)
             {
-                real.Add((pole.Real, scale * residues[i].Value.Real, uncertainty));
+                real.Add((pole.Real, scale * residues[i].Value.Real, uncertainty, ErrorOf(i)));
             }
             else
             {
-                builder.AddPole(scale * residues[i].Value, pole, uncertainty);
+                builder.AddPole(scale * residues[i].Value, pole, uncertainty, ErrorOf(i));
             }
         }
 
@@ -114,7 +124,7 @@ internal static class DecomposedTerms
         return new LoopTerms(builder, 0, ratios, value, sweep.Model.Rate, [], false, null);
     }
 
-    private static void AddReal(LoopTermsBuilder builder, List<(double Pole, double Residue, double Uncertainty)> real)
+    private static void AddReal(LoopTermsBuilder builder, List<(double Pole, double Residue, double Uncertainty, double Error)> real)
     {
         real.Sort((a, b) => a.Pole.CompareTo(b.Pole));
         for (int i = 0; i < real.Count; i++)
@@ -122,12 +132,13 @@ internal static class DecomposedTerms
             if (i + 1 < real.Count && LoopTermsBuilder.IsNear(real[i].Pole, real[i + 1].Pole))
             {
                 builder.AddNearPair(
-                    real[i].Residue, real[i].Pole, real[i + 1].Residue, real[i + 1].Pole, Math.Max(real[i].Uncertainty, real[i + 1].Uncertainty));
+                    real[i].Residue, real[i].Pole, real[i + 1].Residue, real[i + 1].Pole, Math.Max(real[i].Uncertainty, real[i + 1].Uncertainty),
+                    real[i].Error + real[i + 1].Error);
                 i++;
             }
             else
             {
-                builder.AddPole(real[i].Residue, real[i].Pole, real[i].Uncertainty);
+                builder.AddPole(real[i].Residue, real[i].Pole, real[i].Uncertainty, real[i].Error);
             }
         }
     }

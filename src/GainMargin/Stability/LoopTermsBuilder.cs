@@ -19,6 +19,7 @@ internal sealed class LoopTermsBuilder
     private readonly List<LoopPole> _invisible = [];
 
     private int _zeroRoots;
+    private double _zeroError;
 
     /// <summary>Coefficient of <c>1/s</c> at zero.</summary>
     public double SimpleZero { get; private set; }
@@ -67,22 +68,22 @@ internal sealed class LoopTermsBuilder
     }
 
     /// <summary>A conjugate pair or, with a real pole, one pole; residues as they are.</summary>
-    public void AddPole(Complex residue, Complex pole, double uncertainty)
+    public void AddPole(Complex residue, Complex pole, double uncertainty, double residueError = 0)
     {
         _poles.Add(new LoopPole(pole, uncertainty, false));
         if (pole.Imaginary == 0)
         {
-            AddFirst(residue.Real, pole.Real, uncertainty);
+            AddFirst(residue.Real, pole.Real, uncertainty, residueError);
             return;
         }
 
-        _pairs.Add(PairTerm.Pair(residue, pole, uncertainty));
+        _pairs.Add(PairTerm.Pair(residue, pole, uncertainty) with { ResidueError = residueError });
         double modulus = Complex.Abs(pole);
         _second.Add((2 * residue.Real, -2 * (residue * Complex.Conjugate(pole)).Real, -2 * pole.Real, modulus * modulus));
     }
 
     /// <summary>Two nearly equal real poles in one term.</summary>
-    public void AddNearPair(double residue1, double pole1, double residue2, double pole2, double uncertainty)
+    public void AddNearPair(double residue1, double pole1, double residue2, double pole2, double uncertainty, double residueError)
     {
         _poles.Add(new LoopPole(pole1, uncertainty, false));
         _poles.Add(new LoopPole(pole2, uncertainty, false));
@@ -90,13 +91,18 @@ internal sealed class LoopTermsBuilder
         double f = -((residue1 * pole2) + (residue2 * pole1));
         double d = -(pole1 + pole2);
         double kappa = pole1 * pole2;
-        _pairs.Add(PairTerm.Second(e, f, d, kappa, uncertainty));
+        _pairs.Add(PairTerm.Second(e, f, d, kappa, uncertainty) with { ResidueError = residueError });
         _second.Add((e, f, d, kappa));
     }
 
     /// <summary>Zero roots of rigid motion, of which the loop sees <c>A/s + B/s²</c>.</summary>
-    public void AddZeroRoots(int count, double simple, double twice)
+    /// <param name="count">How many there are.</param>
+    /// <param name="simple"><c>A</c>.</param>
+    /// <param name="twice"><c>B</c>.</param>
+    /// <param name="error">Relative error of both.</param>
+    public void AddZeroRoots(int count, double simple, double twice, double error = 0)
     {
+        _zeroError = Math.Max(_zeroError, error);
         _zeroRoots += count;
         SimpleZero += simple;
         DoubleZero += twice;
@@ -113,12 +119,12 @@ internal sealed class LoopTermsBuilder
 
         if (DoubleZero != 0)
         {
-            _pairs.Add(PairTerm.Second(SimpleZero, DoubleZero, 0, 0, 0));
+            _pairs.Add(PairTerm.Second(SimpleZero, DoubleZero, 0, 0, 0) with { ResidueError = _zeroError * Math.Abs(SimpleZero) });
             _second.Add((SimpleZero, DoubleZero, 0, 0));
         }
         else if (SimpleZero != 0)
         {
-            AddFirst(SimpleZero, 0, 0);
+            AddFirst(SimpleZero, 0, 0, _zeroError * Math.Abs(SimpleZero));
         }
     }
 
@@ -180,9 +186,9 @@ internal sealed class LoopTermsBuilder
         return [new LoopPole(far, 0, far == 0), new LoopPole(near, 0, near == 0)];
     }
 
-    private void AddFirst(double residue, double pole, double uncertainty)
+    private void AddFirst(double residue, double pole, double uncertainty, double residueError = 0)
     {
-        _pairs.Add(PairTerm.First(residue, pole, uncertainty));
+        _pairs.Add(PairTerm.First(residue, pole, uncertainty) with { ResidueError = residueError });
         _first.Add((pole, residue));
     }
 }
