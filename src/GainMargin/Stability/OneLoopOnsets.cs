@@ -21,6 +21,7 @@ internal sealed class OneLoopOnsets(OneLoop loop, CancellationToken cancellation
         ? new ModalEvidence(loop.Path, loop.Pencil, loop.Terms, loop.Index, loop.Scale, loop.Decay > 0)
         : null;
 
+    private readonly List<GainStretch> _doubtful = [];
     private bool _isLost;
 
     /// <summary>Onsets inside the range.</summary>
@@ -38,8 +39,9 @@ internal sealed class OneLoopOnsets(OneLoop loop, CancellationToken cancellation
     /// <summary>Losses through infinity that are not inside the range: nothing is claimed at an end that is one.</summary>
     public List<GainStretch> Losses { get; } = [];
 
-    /// <summary>The edges that are wide enough to be named.</summary>
-    public List<GainStretch> Slivers { get; } = [];
+    /// <summary>The edges that are wide enough to be named, or that hold another onset.</summary>
+    public IEnumerable<GainStretch> Slivers
+        => _doubtful.Where(e => e.To - e.From > 2 * Sliver * _range.Width || Drafts.Exists(d => d.Gain + d.Uncertainty >= e.From && d.Gain - d.Uncertainty <= e.To));
 
     /// <summary>Lower end of what was searched: the range and the base, up to a loss through infinity.</summary>
     public double Low { get; private set; } = Math.Min(loop.Path.Range.From, loop.Terms.BaseValue);
@@ -277,9 +279,9 @@ internal sealed class OneLoopOnsets(OneLoop loop, CancellationToken cancellation
         {
             var edge = new GainStretch(draft.Gain - draft.Uncertainty, draft.Gain + draft.Uncertainty);
             Edges.Add(edge);
-            if (!atBase && draft.Uncertainty > Sliver * _range.Width && edge.From < _range.To && edge.To > _range.From)
+            if (!atBase && edge.From < _range.To && edge.To > _range.From)
             {
-                Slivers.Add(edge);
+                _doubtful.Add(edge);
             }
         }
     }

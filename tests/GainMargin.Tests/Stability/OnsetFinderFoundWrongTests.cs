@@ -100,6 +100,7 @@ public sealed class OnsetFinderFoundWrongTests
     [Theory]
     [InlineData(74697)]
     [InlineData(80642)]
+    [InlineData(92156)]
     [InlineData(71474)]
     [InlineData(13217)]
     [InlineData(13521)]
