@@ -39,9 +39,14 @@ internal sealed class OneLoopOnsets(OneLoop loop, CancellationToken cancellation
     /// <summary>Losses through infinity that are not inside the range: nothing is claimed at an end that is one.</summary>
     public List<GainStretch> Losses { get; } = [];
 
-    /// <summary>The edges that are wide enough to be named, or that hold another onset.</summary>
+    /// <summary>
+    /// The edges that are wide enough to be named or that hold another onset, and the onsets so uncertain that another may lie on
+    /// either side: between them nothing can be counted.
+    /// </summary>
     public IEnumerable<GainStretch> Slivers
-        => _doubtful.Where(e => e.To - e.From > 2 * Sliver * _range.Width || Drafts.Exists(d => d.Gain + d.Uncertainty >= e.From && d.Gain - d.Uncertainty <= e.To));
+        => _doubtful.Where(e => e.To - e.From > 2 * Sliver * _range.Width || Drafts.Exists(d => d.Gain + d.Uncertainty >= e.From && d.Gain - d.Uncertainty <= e.To))
+            .Concat(Drafts.Where(d => d.Uncertainty > Sliver * _range.Width && Drafts.Exists(o => o != d && Math.Abs(o.Gain - d.Gain) <= d.Uncertainty + o.Uncertainty))
+                .Select(d => new GainStretch(d.Gain - d.Uncertainty, d.Gain + d.Uncertainty)));
 
     /// <summary>Lower end of what was searched: the range and the base, up to a loss through infinity.</summary>
     public double Low { get; private set; } = Math.Min(loop.Path.Range.From, loop.Terms.BaseValue);

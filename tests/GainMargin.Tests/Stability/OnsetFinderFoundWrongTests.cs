@@ -23,6 +23,9 @@ public sealed class OnsetFinderFoundWrongTests
         "an acceleration alone on an undamped mode" => Case(
             [1, 1], [0, 0.25], [1, 0.5], [1, 1], [1, 1], new() { Acceleration = 1 }, -0.125, -1.0 / 1024),
         "the same beside negative damping" => Case([1, 1], [0, -0.0625], [1, 2], [1, 1], [1, -1], new() { Acceleration = 1 }, 1.0 / 1024, 0.125),
+        "an onset so uncertain that others lie on either side" => Case(
+            [1, 1, 0.75], [2.842170943040401E-14, 1.4901161193847656E-08, 0], [1e-6, 1, 2.75], [1, 1, 9.313225746154785E-10], [1, 1, 1],
+            new() { Position = 1, Rate = -0.015625 }, -0.234375, 0.25),
         "an open band" => Case([1, 1], [1.74999999999825, 1.09375], [0.765625, 0.765625], [-1, 2], [2, 1], new() { Position = 1, Acceleration = 0.8125 }, -7.5, 8),
         _ => Case([1, 1], [0, 2.5], [0.125, -0.375], [1, 2], [1, -1], new() { Rate = 0.15625, Acceleration = 1 }, -128, 128),
     };
@@ -30,7 +33,7 @@ public sealed class OnsetFinderFoundWrongTests
     public static TheoryData<string> Cases =>
     [
         "an unseen twin of the mode that flutters", "the same, base inside", "twins, one barely damped", "triplets, barely damped", "an acceleration alone on an undamped mode",
-        "the same beside negative damping", "an open band", "a loss through infinity",
+        "the same beside negative damping", "an onset so uncertain that others lie on either side", "an open band", "a loss through infinity",
     ];
 
     [Theory]
