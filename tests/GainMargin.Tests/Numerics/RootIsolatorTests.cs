@@ -287,6 +287,7 @@ public sealed class RootIsolatorTests
 
     // x″ + 2ζωx′ + ω²x = u, T·u′ + u = −g·x: of third order, so g_max = 2ζω(1/T + 2ζω + ω²T) by Routh's criterion.
     [Theory]
+    [Trait("Published", "P24")]
     [InlineData(0.02, 1, 0.5, 0.1016, 1.0392304845413265)]
     [InlineData(0.02, 1, 5, double.NaN, double.NaN)]
     [InlineData(0.001, 3, 0.01, double.NaN, double.NaN)]

@@ -209,6 +209,11 @@ public abstract class PublishedFeedbackTests
         var onset = Assert.Single(boundary.Onsets, o => o.Direction == CrossingDirection.Destabilising);
         Assert.Equal(OnsetKind.LosslessCoalescence, onset.Kind);
         Assert.Equal(3.5 - Math.Sqrt(2), onset.Gain, 1e-13);
+        Assert.Equal(Math.Pow(2, -0.25), onset.Frequency.Radians, 1e-12);
+
+        // At 7/2 + √2 the growing pair becomes two growing real roots: no restabilisation.
+        Assert.Equal(StabilityVerdict.Unstable, boundary.Intervals[^1].Inside);
+        Assert.Single(boundary.Onsets);
         Assert.Equal(StabilityVerdict.Marginal, boundary.Intervals[0].Inside);
         Assert.Contains(boundary.Cautions, c => c.Kind == CautionKind.LosslessLoop);
     }
