@@ -32,6 +32,21 @@ public sealed class OnsetFinderTests
         return Boundaries.Path(ElasticStructure.FromModes(table), Boundaries.Loop("g", "scale", "motor", ratios, 0.1), 0, to);
     }
 
+    /// <summary>A chain of unit masses and springs with light damping; motor at one end, scale at the other.</summary>
+    private static GainPath EndToEnd(int n, double to)
+    {
+        var stiffness = DenseMatrix.Create(n, n, (i, j) => i == j ? (i == n - 1 ? 1 : 2) : Math.Abs(i - j) == 1 ? -1 : 0);
+        DofNames names = DofNames.Of([.. Enumerable.Range(0, n).Select(i => $"q{i}")]);
+        var structure = ElasticStructure.FromMatrices(new StructureMatrices
+        {
+            Dofs = names,
+            Mass = DenseMatrix.CreateIdentity(n),
+            Damping = DenseMatrix.OfMatrix(stiffness * 0.01),
+            Stiffness = stiffness,
+        });
+        return Boundaries.Path(structure, Boundaries.Loop("g", names[n - 1], names[0], new() { Position = 1 }, 0.1), 0, to);
+    }
+
     private static OnsetOptions WithoutConfirmation => new() { Confirm = false };
 
     [Fact]
@@ -295,19 +310,7 @@ public sealed class OnsetFinderTests
     [Fact]
     public void FindAll_ChainWithGainsToAMillion_CompleteInAFewThousandEvaluations()
     {
-        const int n = 40;
-        var stiffness = DenseMatrix.Create(n, n, (i, j) => i == j ? (i == n - 1 ? 1 : 2) : Math.Abs(i - j) == 1 ? -1 : 0);
-        DofNames names = DofNames.Of([.. Enumerable.Range(0, n).Select(i => $"q{i}")]);
-        var structure = ElasticStructure.FromMatrices(new StructureMatrices
-        {
-            Dofs = names,
-            Mass = DenseMatrix.CreateIdentity(n),
-            Damping = DenseMatrix.OfMatrix(stiffness * 0.01),
-            Stiffness = stiffness,
-        });
-
-        var boundary = OnsetFinder.FindAll(
-            Boundaries.Path(structure, Boundaries.Loop("g", names[n - 1], names[0], new() { Position = 1 }, 0.1), 0, 1e6), WithoutConfirmation);
+        var boundary = OnsetFinder.FindAll(EndToEnd(40, 1e6), WithoutConfirmation);
 
         Assert.Equal(Coverage.Complete, boundary.Completeness.Flutter);
         Assert.Equal(19, boundary.Onsets.Length);
@@ -319,18 +322,7 @@ public sealed class OnsetFinderTests
     [Fact]
     public void FindAll_GainsBeyondRounding_OpenStretchIsNamed()
     {
-        const int n = 12;
-        var stiffness = DenseMatrix.Create(n, n, (i, j) => i == j ? (i == n - 1 ? 1 : 2) : Math.Abs(i - j) == 1 ? -1 : 0);
-        DofNames names = DofNames.Of([.. Enumerable.Range(0, n).Select(i => $"q{i}")]);
-        var structure = ElasticStructure.FromMatrices(new StructureMatrices
-        {
-            Dofs = names,
-            Mass = DenseMatrix.CreateIdentity(n),
-            Damping = DenseMatrix.OfMatrix(stiffness * 0.01),
-            Stiffness = stiffness,
-        });
-
-        var boundary = OnsetFinder.FindAll(Boundaries.Path(structure, Boundaries.Loop("g", names[n - 1], names[0], new() { Position = 1 }, 0.1), 0, 1e18));
+        var boundary = OnsetFinder.FindAll(EndToEnd(12, 1e18));
 
         Assert.Equal(Coverage.Complete, boundary.Completeness.Flutter);
         Assert.Contains(boundary.Cautions, c => c.Kind == CautionKind.OpenStretch);
